@@ -1,0 +1,115 @@
+package fit
+
+import "standoff/measure"
+
+// Schema names the layout of Result as JSON.
+const Schema = "standoff/result/1"
+
+// Value is a number with its doubt. Value and Expanded are nil when the data
+// do not hold the number (Resolved false); then UpperLimit or LowerLimit say
+// what can be said, one-sided, 95 %.
+type Value struct {
+	Value          *float64 `json:"value"`
+	Expanded       *float64 `json:"expanded"`        // half-width of the interval, CoverageFactor standard uncertainties
+	CoverageFactor float64  `json:"coverage_factor"` // k
+	Resolved       bool     `json:"resolved"`
+	Unit           string   `json:"unit"`
+	UpperLimit     *float64 `json:"upper_limit"`
+	LowerLimit     *float64 `json:"lower_limit,omitempty"`
+}
+
+// Result is everything that the analysis of one session found.
+type Result struct {
+	Schema    string            `json:"schema"`
+	Version   string            `json:"version"` // of the program
+	Capsule   CapsuleResult     `json:"capsule"`
+	Distances []DistanceResult  `json:"distances"`
+	Takes     []TakeResult      `json:"takes"`
+	Polarity  string            `json:"polarity"` // normal, reversed, unknown
+	Fit       FitSummary        `json:"fit"`
+	Models    []Candidate       `json:"models"` // what was compared, best first
+	RiseTable RiseTable         `json:"rise_table"`
+	Warnings  []measure.Warning `json:"warnings"`
+}
+
+// CapsuleResult is what was found about the capsule.
+type CapsuleResult struct {
+	Model            string `json:"model"` // summed, phase-shift
+	Body             string `json:"body"`  // open, sphere
+	GradientFraction Value  `json:"gradient_fraction"`
+	PortSpacing      Value  `json:"port_spacing"` // plane-wave effective, m
+	Setback          Value  `json:"setback"`      // m, as fitted with its prior
+	SourceRadius     Value  `json:"source_radius"`
+	Pattern          string `json:"pattern"` // nearest name, "" when the mix is not resolved
+	Claimed          string `json:"claimed,omitempty"`
+	Agrees           *bool  `json:"agrees,omitempty"` // whether the mix is consistent with the claim
+}
+
+// DistanceResult is one place on the list.
+type DistanceResult struct {
+	Label          string         `json:"label"`
+	Nominal        float64        `json:"nominal_m"`
+	Fitted         float64        `json:"fitted_m"`          // nominal + tape error found, grille to source
+	FittedExpanded float64        `json:"fitted_expanded_m"` // k = 2
+	Used           bool           `json:"used"`
+	Flags          []measure.Flag `json:"flags"`
+	Alone          Alone          `json:"alone"`
+	Misfit         float64        `json:"reduced_chi_square"` // of this distance within the joint fit
+}
+
+// Alone is the fit of one response by itself, given the far-field response
+// that the other distances settle.
+type Alone struct {
+	GradientFraction Value `json:"gradient_fraction"`
+	PortSpacing      Value `json:"port_spacing"`
+}
+
+// TakeResult is one recording and what became of it.
+type TakeResult struct {
+	File     string         `json:"file"`
+	Distance string         `json:"distance"`
+	Number   int            `json:"number"`
+	Accepted bool           `json:"accepted"`
+	Flags    []measure.Flag `json:"flags"`
+	PeakDB   float64        `json:"peak_dbfs"`
+	SNRDB    float64        `json:"snr_db"`
+	Arrival  float64        `json:"arrival_s"` // of the direct sound, from the start of the sweep, latency included
+	Reason   string         `json:"reason,omitempty"`
+}
+
+// FitSummary says how and how well the joint fit was made.
+type FitSummary struct {
+	From             float64 `json:"from_hz"`
+	To               float64 `json:"to_hz"`
+	ReducedChiSquare float64 `json:"reduced_chi_square"`
+	Points           int     `json:"points"`
+	DegreesOfFreedom int     `json:"degrees_of_freedom"`
+	Gate             float64 `json:"gate_s"`
+	GateReason       string  `json:"gate_reason"`
+	Clock            string  `json:"clock"` // common, free
+	Status           string  `json:"status"`
+	SpeedOfSound     float64 `json:"speed_of_sound_m_s"`
+	SpeedExpanded    float64 `json:"speed_of_sound_expanded_m_s"`
+}
+
+// Candidate is one model form that was tried.
+type Candidate struct {
+	Model            string  `json:"model"`
+	Body             string  `json:"body"`
+	GradientFraction float64 `json:"gradient_fraction"`
+	PortSpacing      float64 `json:"port_spacing_m"`
+	ChiSquare        float64 `json:"chi_square"`
+	ReducedChiSquare float64 `json:"reduced_chi_square"`
+	Delta            float64 `json:"delta_chi_square"` // above the best, scaled by the best's reduced chi-square
+	Chosen           bool    `json:"chosen"`
+	Why              string  `json:"why"`
+}
+
+// RiseTable is the rise in dB at working distances: DB[i][j] at
+// Frequencies[i] and Distances[j], with Expanded[i][j] at k = 2.
+type RiseTable struct {
+	Distances   []float64   `json:"distances_m"`
+	Frequencies []float64   `json:"frequencies_hz"`
+	DB          [][]float64 `json:"db"`
+	Expanded    [][]float64 `json:"expanded_db"`
+}
