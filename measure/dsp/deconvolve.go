@@ -24,7 +24,8 @@ import (
 type Deconvolver struct {
 	n       int
 	rate    float64
-	inverse []complex128 // conj(X)·W/(|X|²+ε), bins 0..n/2
+	forward []complex128 // X, bins 0..n/2
+	inverse []complex128 // conj(X)·W/(|X|²+ε), likewise
 	fft     *fourier.FFT
 	coef    []complex128
 	buf     []float64
@@ -46,7 +47,8 @@ func NewDeconvolver(excitation []float64, rate int, low, from, to, high float64,
 	d.fft = fourier.NewFFT(d.n)
 	d.buf = make([]float64, d.n)
 	copy(d.buf, excitation)
-	d.inverse = d.fft.Coefficients(nil, d.buf)
+	d.forward = d.fft.Coefficients(nil, d.buf)
+	d.inverse = append([]complex128(nil), d.forward...)
 	d.coef = make([]complex128, len(d.inverse))
 	return d, d.invert(low, from, to, high)
 }
@@ -75,7 +77,7 @@ func (d *Deconvolver) invert(low, from, to, high float64) error {
 
 // Clone returns a Deconvolver with the same inverse and its own scratch.
 func (d *Deconvolver) Clone() *Deconvolver {
-	return &Deconvolver{n: d.n, rate: d.rate, inverse: d.inverse, fft: fourier.NewFFT(d.n),
+	return &Deconvolver{n: d.n, rate: d.rate, forward: d.forward, inverse: d.inverse, fft: fourier.NewFFT(d.n),
 		coef: make([]complex128, len(d.inverse)), buf: make([]float64, d.n)}
 }
 
@@ -92,6 +94,21 @@ func (d *Deconvolver) Impulse(recording []float32) []float64 {
 	d.fft.Coefficients(d.coef, d.buf)
 	for i := range d.coef {
 		d.coef[i] *= d.inverse[i]
+	}
+	out := d.fft.Sequence(nil, d.coef)
+	scale := 1 / float64(d.n)
+	for i := range out {
+		out[i] *= scale
+	}
+	return out
+}
+
+// Forward returns the excitation as a response of Len samples passes it on: the
+// circular convolution of both.
+func (d *Deconvolver) Forward(response []float64) []float64 {
+	d.fft.Coefficients(d.coef, response)
+	for i := range d.coef {
+		d.coef[i] *= d.forward[i]
 	}
 	out := d.fft.Sequence(nil, d.coef)
 	scale := 1 / float64(d.n)

@@ -66,3 +66,12 @@ func (f *file) findDistance(list []measure.Distance, text string, line int, path
 	}
 	return "", false
 }
+
+// Length reads a length with its unit, such as 30mm or 2.5in, in m.
+func Length(text string) (float64, error) {
+	metres, wrong := length.parse(strings.TrimSpace(text))
+	if wrong != nil {
+		return 0, errors.New(wrong.reason)
+	}
+	return metres, nil
+}

@@ -1,0 +1,405 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"runtime"
+	"slices"
+
+	"standoff/fit"
+	"standoff/measure"
+	"standoff/measure/dsp"
+	"standoff/measure/rig"
+	"standoff/measure/session"
+
+	"golang.org/x/sync/errgroup"
+)
+
+// analysed is all that the analysis of a session has to say.
+type analysed struct {
+	folder *session.Folder
+	rig    *rig.Rig
+	exc    *measure.Excitation
+	takes  []heard
+	groups []group // in the order of the rig, those with accepted takes only
+	gate   measure.Gate
+	fit    *fit.Analysis
+	result *fit.Result
+}
+
+// heard is a take with what it says.
+type heard struct {
+	take     session.Take
+	distance measure.Distance
+	analysis *measure.TakeAnalysis
+	flags    []measure.Flag
+	reasons  []string
+	accepted bool
+}
+
+// group are the accepted takes at one distance.
+type group struct {
+	distance measure.Distance
+	takes    []heard
+	corner   float64 // of the equaliser, rad/s
+	average  measure.Spectrum
+}
+
+// analyse is the chain from a folder's recordings to the result; it writes the
+// verdicts on the takes back to the manifest.
+func analyse(ctx context.Context, f *session.Folder, version string) (*analysed, error) {
+	a := &analysed{folder: f, rig: f.Rig()}
+	var err error
+	if a.exc, err = excitationOf(f); err != nil {
+		return nil, err
+	}
+	if err := a.listen(ctx); err != nil {
+		return nil, err
+	}
+	a.compare()
+	if err := a.judge(); err != nil {
+		return nil, err
+	}
+	if err := a.group(); err != nil {
+		return nil, err
+	}
+	if err := a.fitAll(ctx); err != nil {
+		return nil, err
+	}
+	a.complete(version)
+	return a, nil
+}
+
+// excitationOf is what was played: the rig's sweep, or one kept in the folder.
+func excitationOf(f *session.Folder) (*measure.Excitation, error) {
+	x, rate, ok, err := f.Excitation()
+	switch {
+	case err != nil:
+		return nil, err
+	case ok:
+		return measure.SampledExcitation(x, rate)
+	}
+	return rigExcitation(f.Rig())
+}
+
+func rigExcitation(r *rig.Rig) (*measure.Excitation, error) {
+	s := dsp.Sweep{From: r.Sweep.From, To: r.Sweep.To, Duration: r.Sweep.Duration,
+		SampleRate: r.Audio.SampleRate, Before: r.Sweep.Before, After: r.Sweep.After}
+	exc, err := measure.SweepExcitation(s, r.Sweep.Level)
+	if err != nil {
+		return nil, fmt.Errorf("%s: sweep: %w", r.Path, err)
+	}
+	return exc, nil
+}
+
+// listen loads and analyses every take, as many at a time as there are cores.
+func (a *analysed) listen(ctx context.Context) error {
+	places := map[string]measure.Distance{}
+	for _, d := range a.rig.Distances {
+		places[d.Label] = d
+	}
+	for _, t := range a.folder.Takes() {
+		if d, ok := places[t.Distance]; ok {
+			a.takes = append(a.takes, heard{take: t, distance: d})
+		}
+	}
+	if len(a.takes) == 0 {
+		return fmt.Errorf("%s: no take to analyse", a.folder.Dir())
+	}
+	return a.inParallel(ctx)
+}
+
+// workers bounds the memory as well as the load: each carries some 10 MB a
+// second of sweep.
+func workers() int { return min(runtime.GOMAXPROCS(0), 8) }
+
+func (a *analysed) inParallel(ctx context.Context) error {
+	first, err := a.folder.Load(a.takes[0].take)
+	if err != nil {
+		return err
+	}
+	base, err := measure.NewAnalyser(a.exc, len(first.Mic), a.rig.Fit.From, a.rig.Fit.To)
+	if err != nil {
+		return err
+	}
+	jobs := make(chan int)
+	g, ctx := errgroup.WithContext(ctx)
+	g.Go(func() error {
+		defer close(jobs)
+		for i := range a.takes {
+			select {
+			case jobs <- i:
+			case <-ctx.Done():
+				return ctx.Err()
+			}
+		}
+		return nil
+	})
+	for range workers() {
+		g.Go(func() error {
+			mine := base.Clone()
+			for i := range jobs {
+				if err := a.hear(mine, i); err != nil {
+					return err
+				}
+			}
+			return nil
+		})
+	}
+	return g.Wait()
+}
+
+// hear analyses take i. A take that is longer than the others gets an analyser
+// of its own.
+func (a *analysed) hear(with *measure.Analyser, i int) error {
+	h := &a.takes[i]
+	rec, err := a.folder.Load(h.take)
+	if err != nil {
+		return err
+	}
+	if rec.SampleRate != a.exc.Rate {
+		return fmt.Errorf("%s: recorded at %d Hz, the excitation has %d Hz", a.folder.Path(h.take.File), rec.SampleRate, a.exc.Rate)
+	}
+	rec.Overflows, rec.Underflows = h.take.Overflows, h.take.Underflows
+	if len(rec.Mic) > with.Longest() {
+		if with, err = measure.NewAnalyser(a.exc, len(rec.Mic), a.rig.Fit.From, a.rig.Fit.To); err != nil {
+			return err
+		}
+	}
+	h.analysis = with.Take(rec)
+	h.flags = slices.Clone(h.analysis.Flags)
+	h.reasons = slices.Clone(h.analysis.Reasons)
+	h.accepted = !slices.ContainsFunc(h.flags, measure.Flag.Rejects)
+	return nil
+}
+
+// bench is what the comparison of distances needs to know.
+func benchOf(r *rig.Rig) measure.Bench {
+	b := measure.Bench{SpeedOfSound: r.Air.SpeedOfSound(), Tape: r.DistanceUncertainty, Setback: r.Capsule.Setback, Clock: r.Audio.Clock}
+	if r.Source.Kind == fit.PistonSource {
+		b.SourceRadius = r.Source.Radius
+	}
+	return b
+}
+
+// accepted are the indices of takes that nothing speaks against.
+func (a *analysed) acceptedTakes() (at []int, placed []measure.Placed) {
+	for i, h := range a.takes {
+		if h.accepted {
+			at, placed = append(at, i), append(placed, measure.Placed{Distance: h.distance, Analysis: h.analysis})
+		}
+	}
+	return at, placed
+}
+
+// compare flags takes that do not fit the others.
+func (a *analysed) compare() {
+	at, placed := a.acceptedTakes()
+	for n, findings := range benchOf(a.rig).Compare(placed) {
+		h := &a.takes[at[n]]
+		for _, f := range findings {
+			h.flags = append(h.flags, f.Flag)
+			h.reasons = append(h.reasons, f.Reason)
+			h.accepted = false
+		}
+	}
+}
+
+// judge writes the verdicts to the manifest.
+func (a *analysed) judge() error {
+	for _, h := range a.takes {
+		q := h.analysis.Quality
+		v := session.Verdict{Accepted: h.accepted, Flags: h.flags, Reason: joinReasons(h.reasons),
+			Quality: session.Quality{PeakDBFS: dB(q.Peak), SNRDB: dB(math.Sqrt(q.SNR)), ArrivalS: q.Arrival}}
+		if err := a.folder.Judge(h.take.File, v); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// dB of an amplitude ratio, never below −200.
+func dB(x float64) float64 { return math.Max(20*math.Log10(x), -200) }
+
+// group sorts accepted takes by distance.
+func (a *analysed) group() error {
+	for _, d := range a.rig.Distances {
+		g := group{distance: d}
+		for _, h := range a.takes {
+			if h.accepted && h.distance.Label == d.Label {
+				g.takes = append(g.takes, h)
+			}
+		}
+		if len(g.takes) > 0 {
+			a.groups = append(a.groups, g)
+		}
+	}
+	if len(a.groups) < 2 {
+		return a.tooFew()
+	}
+	slices.SortStableFunc(a.groups, func(x, y group) int {
+		switch {
+		case x.distance.Metres < y.distance.Metres:
+			return -1
+		case x.distance.Metres > y.distance.Metres:
+			return 1
+		}
+		return 0
+	})
+	return nil
+}
+
+func (a *analysed) tooFew() error {
+	for _, h := range a.takes {
+		if len(h.reasons) > 0 {
+			return fmt.Errorf("%s: fewer than two distances are fit to use; %s: %s", a.folder.Dir(), h.take.File, h.reasons[0])
+		}
+	}
+	return fmt.Errorf("%s: fewer than two distances have been measured; a fit needs two", a.folder.Dir())
+}
+
+// fitAll gates, transforms and fits: once with a guess of the rise, and once
+// more with the responses made compact by the rise that was found.
+func (a *analysed) fitAll(ctx context.Context) error {
+	clock := benchOf(a.rig).DecideClock(a.placed())
+	a.gate = a.chooseGate()
+	from, to := math.Max(a.rig.Fit.From, a.exc.From), math.Min(a.rig.Fit.To, a.exc.To)
+	hz := measure.Grid(from, to, a.gate.Duration())
+	if len(hz) < 6 {
+		return fmt.Errorf("%s: a gate of %.1f ms leaves %d frequencies between %.0f and %.0f Hz: widen fit.from and fit.to",
+			a.folder.Dir(), 1e3*a.gate.Length, len(hz), from, to)
+	}
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	a.corners(guess(a.rig))
+	a.spectra(hz, clock)
+	first, err := fit.Analyse(a.dataset(hz, clock), []fit.Model{{Form: fit.Summed, Body: fit.Open, Source: a.rig.Source.Kind}}, "")
+	if err != nil {
+		return err
+	}
+	b := first.Best()
+	a.corners(func(r float64) float64 { return b.Model.CornerRate(b.Acoustics, r) })
+	a.spectra(hz, clock)
+	if err := ctx.Err(); err != nil {
+		return err
+	}
+	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed)
+	return err
+}
+
+func (a *analysed) placed() []measure.Placed {
+	_, placed := a.acceptedTakes()
+	return placed
+}
+
+// guess is the corner of the rise before anything is known: that of a cardioid.
+func guess(r *rig.Rig) func(float64) float64 {
+	c := r.Air.SpeedOfSound()
+	return func(distance float64) float64 { return 0.5 * c / distance }
+}
+
+func (a *analysed) corners(of func(r float64) float64) {
+	for i := range a.groups {
+		a.groups[i].corner = of(a.groups[i].distance.Metres + a.rig.Capsule.Setback)
+	}
+}
+
+func (a *analysed) chooseGate() measure.Gate {
+	if a.rig.Fit.Gate > 0 {
+		return measure.FixedGate(a.rig.Fit.Gate)
+	}
+	var all []*measure.ImpulseResponse
+	for _, g := range a.groups {
+		for _, h := range g.takes {
+			all = append(all, &h.analysis.Impulse)
+		}
+	}
+	return measure.ChooseGate(all, a.exc.From, a.exc.To)
+}
+
+// spectra gates, transforms and averages on a grid.
+func (a *analysed) spectra(hz []float64, clock string) {
+	for i := range a.groups {
+		a.groups[i].average = a.spectrumOf(a.groups[i], hz, clock)
+	}
+}
+
+// spectrumOf is the average of a group. Time zero is where the arrivals put the
+// start of the sound: with a common clock the same for all takes, with a free one
+// for each take by itself.
+func (a *analysed) spectrumOf(g group, hz []float64, clock string) measure.Spectrum {
+	var repeats []measure.Spectrum
+	common := a.commonStart()
+	for _, h := range g.takes {
+		ir := &h.analysis.Impulse
+		start := ir.Latency + common
+		if clock == measure.ClockFree {
+			start = ir.Arrival - a.travel(g.distance)
+		}
+		repeats = append(repeats, ir.Spectrum(a.gate, g.corner, start, hz))
+	}
+	return measure.Average(repeats)
+}
+
+// travel is the time of sound to a distance in samples.
+func (a *analysed) travel(d measure.Distance) float64 {
+	return (d.Metres + a.rig.Capsule.Setback) / a.rig.Air.SpeedOfSound() * float64(a.exc.Rate)
+}
+
+// commonStart is the median over all takes of arrival less travel, in samples.
+func (a *analysed) commonStart() float64 {
+	var starts []float64
+	for _, g := range a.groups {
+		for _, h := range g.takes {
+			starts = append(starts, h.analysis.Impulse.Arrival-h.analysis.Impulse.Latency-a.travel(g.distance))
+		}
+	}
+	return measure.Median(starts)
+}
+
+// relativeFloor is what limits a response besides noise, as a fraction of it
+// (both quadratures together): what is left of the room, small movements,
+// rounding of the model.
+const relativeFloor = 0.003
+
+func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
+	r := a.rig
+	d := &fit.Dataset{
+		Hz: hz, FreeClock: clock == measure.ClockFree,
+		Setback: r.Capsule.Setback, SetbackUncertainty: r.Capsule.SetbackUncertainty,
+		Radius: r.Source.Radius, RadiusUncertainty: r.Source.RadiusUncertainty,
+		Speed: r.Air.SpeedOfSound(), SpeedUncertainty: r.Air.SpeedUncertainty(),
+	}
+	if r.Source.Kind == fit.PointSource {
+		d.Radius, d.RadiusUncertainty = 0, 1e-3
+	}
+	for _, g := range a.groups {
+		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty, Value: g.average.Value}
+		for j, v := range g.average.Value {
+			floor := relativeFloor * relativeFloor * (real(v)*real(v) + imag(v)*imag(v))
+			p.Variance = append(p.Variance, g.average.Variance[j]+floor+1e-300)
+		}
+		d.Points = append(d.Points, p)
+	}
+	return d
+}
+
+// models are those that the rig allows.
+func models(r *rig.Rig) []fit.Model {
+	forms, bodies := []string{fit.PhaseShift, fit.Summed}, []string{fit.Sphere, fit.Open}
+	if r.Capsule.Model != "auto" {
+		forms = []string{r.Capsule.Model}
+	}
+	if r.Capsule.Body != "auto" {
+		bodies = []string{r.Capsule.Body}
+	}
+	var out []fit.Model
+	for _, form := range forms {
+		for _, body := range bodies {
+			out = append(out, fit.Model{Form: form, Body: body, Source: r.Source.Kind})
+		}
+	}
+	return out
+}

@@ -1,0 +1,97 @@
+package main
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+
+	"standoff/fit"
+	"standoff/measure"
+)
+
+// complete adds to the fit's result what only the takes know.
+func (a *analysed) complete(version string) {
+	r := a.fit.Result()
+	r.Version = version
+	r.Polarity = a.fit.Polarity(a.rig.Source.Polarity)
+	r.Fit.Gate, r.Fit.GateReason = a.gate.Length, a.gate.Reason
+	for _, h := range a.takes {
+		q := h.analysis.Quality
+		r.Takes = append(r.Takes, fit.TakeResult{
+			File: h.take.File, Distance: h.take.Distance, Number: h.take.Number, Accepted: h.accepted,
+			Flags: orEmpty(h.flags), PeakDB: dB(q.Peak), SNRDB: dB(q.SNR) / 2, Arrival: q.Arrival, Reason: joinReasons(h.reasons),
+		})
+	}
+	r.Distances = a.allDistances(r.Distances)
+	r.Warnings = append(a.takeWarnings(), r.Warnings...)
+	a.result = r
+}
+
+func orEmpty(f []measure.Flag) []measure.Flag {
+	if f == nil {
+		return []measure.Flag{}
+	}
+	return f
+}
+
+func joinReasons(r []string) string { return strings.Join(r, "; ") }
+
+// allDistances puts the fitted distances in the rig's order and adds those that
+// could not be used.
+func (a *analysed) allDistances(fitted []fit.DistanceResult) []fit.DistanceResult {
+	var out []fit.DistanceResult
+	for _, d := range a.rig.Distances {
+		res := fit.DistanceResult{Label: d.Label, Nominal: d.Metres, Fitted: d.Metres,
+			FittedExpanded: fit.Coverage * a.rig.DistanceUncertainty, Alone: fit.NotAlone()}
+		for _, f := range fitted {
+			if f.Label == d.Label {
+				res = f
+			}
+		}
+		res.Flags = a.flagsAt(d.Label, res.Used)
+		out = append(out, res)
+	}
+	return out
+}
+
+// flagsAt are the flags of a distance: of all its takes when none could be used,
+// else of the accepted ones.
+func (a *analysed) flagsAt(label string, used bool) []measure.Flag {
+	out := []measure.Flag{}
+	for _, h := range a.takes {
+		if h.distance.Label != label || (used && !h.accepted) {
+			continue
+		}
+		for _, f := range h.flags {
+			if !slices.Contains(out, f) {
+				out = append(out, f)
+			}
+		}
+	}
+	return out
+}
+
+// takeWarnings name what was rejected and what is missing.
+func (a *analysed) takeWarnings() []measure.Warning {
+	out := []measure.Warning{}
+	for _, h := range a.takes {
+		if !h.accepted {
+			out = append(out, measure.Warning{Code: "take-rejected", Text: fmt.Sprintf("%s is left out: %s", h.take.File, joinReasons(h.reasons))})
+		}
+	}
+	for _, d := range a.rig.Distances {
+		if !slices.ContainsFunc(a.takes, func(h heard) bool { return h.distance.Label == d.Label }) {
+			out = append(out, measure.Warning{Code: "distance-missing", Text: d.Label + " has not been measured",
+				Hint: "run again on the same folder: it goes on where it stopped"})
+		} else if !slices.ContainsFunc(a.groups, func(g group) bool { return g.distance.Label == d.Label }) {
+			out = append(out, measure.Warning{Code: "distance-left-out", Text: d.Label + " has no take that can be used"})
+		}
+	}
+	return out
+}
+
+// needsALook reports whether a person should look at a result: anything but a
+// note.
+func needsALook(r *fit.Result) bool {
+	return slices.ContainsFunc(r.Warnings, func(w measure.Warning) bool { return w.Code != "form-not-told" })
+}

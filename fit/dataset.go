@@ -1,0 +1,83 @@
+package fit
+
+import (
+	"errors"
+	"fmt"
+	"math"
+)
+
+// Dataset is what the fit works on: complex responses of one capsule on one
+// frequency grid at several distances, and what is known beforehand. Values are
+// in SI units, uncertainties standard ones.
+type Dataset struct {
+	Hz     []float64
+	Points []Point
+
+	Setback, SetbackUncertainty float64 // δ, m
+	Radius, RadiusUncertainty   float64 // b, m
+	Speed, SpeedUncertainty     float64 // c, m/s
+	FreeClock                   bool    // every response has a delay of its own
+}
+
+// Point is one distance.
+type Point struct {
+	Label    string
+	Nominal  float64      // grille to source, m
+	Tape     float64      // standard uncertainty of Nominal, m
+	Value    []complex128 // on Hz
+	Variance []float64    // E|error|² of Value
+}
+
+// Validate reports why a dataset cannot be fitted.
+func (d *Dataset) Validate() error {
+	if len(d.Points) < 2 {
+		return errors.New("a fit needs at least two distances")
+	}
+	if len(d.Hz) < 4 {
+		return errors.New("a fit needs at least four frequencies: widen the band or lengthen the gate")
+	}
+	for _, p := range d.Points {
+		if len(p.Value) != len(d.Hz) || len(p.Variance) != len(d.Hz) {
+			return fmt.Errorf("%s: response and frequencies differ in number", p.Label)
+		}
+		for j, v := range p.Value {
+			s := math.Abs(real(v)) + math.Abs(imag(v)) + p.Variance[j]
+			if math.IsNaN(s) || math.IsInf(s, 0) || !(p.Variance[j] > 0) {
+				return fmt.Errorf("%s: the response at %.0f Hz is no usable number", p.Label, d.Hz[j])
+			}
+		}
+		if p.Nominal+d.Setback <= 0 {
+			return fmt.Errorf("%s: the capsule would be inside the source", p.Label)
+		}
+	}
+	return nil
+}
+
+func (d *Dataset) nearest() float64 {
+	r := math.Inf(1)
+	for _, p := range d.Points {
+		r = math.Min(r, p.Nominal+d.Setback)
+	}
+	return r
+}
+
+// without is the dataset without point i.
+func (d *Dataset) without(i int) *Dataset {
+	out := *d
+	out.Points = append(append([]Point(nil), d.Points[:i]...), d.Points[i+1:]...)
+	return &out
+}
+
+// scaledBy multiplies all variances, for a misfit that noise does not explain.
+func (d *Dataset) scaledBy(factor float64) *Dataset {
+	out := *d
+	out.Points = append([]Point(nil), d.Points...)
+	for i := range out.Points {
+		v := append([]float64(nil), out.Points[i].Variance...)
+		for j := range v {
+			v[j] *= factor
+		}
+		out.Points[i].Variance = v
+	}
+	return &out
+}

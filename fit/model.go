@@ -1,0 +1,119 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+	"math/cmplx"
+)
+
+// Model is a form of capsule, body and source.
+type Model struct {
+	Form   string // Summed, PhaseShift
+	Body   string // Open, Sphere
+	Source string // PointSource, PistonSource
+}
+
+// The forms, bodies and sources.
+const (
+	Summed       = "summed"      // a pressure element and a gradient element, added
+	PhaseShift   = "phase-shift" // one diaphragm with a delayed rear entry
+	Open         = "open"        // two ports in free air
+	Sphere       = "sphere"      // two ports at the poles of a rigid sphere
+	PointSource  = "point"
+	PistonSource = "piston" // baffled, circular, moving as one
+)
+
+func (m Model) String() string { return m.Form + " on a " + m.Body + " body" }
+
+func (m Model) validate() error {
+	ok := (m.Form == Summed || m.Form == PhaseShift) && (m.Body == Open || m.Body == Sphere) &&
+		(m.Source == PointSource || m.Source == PistonSource)
+	if !ok {
+		return fmt.Errorf("no such model: form %q, body %q, source %q", m.Form, m.Body, m.Source)
+	}
+	return nil
+}
+
+// Acoustics are the values of a model's parameters.
+type Acoustics struct {
+	Beta    float64 // gradient fraction β
+	Spacing float64 // d, plane-wave effective port spacing, m; 3a for the sphere
+	Radius  float64 // b, of the source, m
+	Speed   float64 // c, m/s
+}
+
+// Output is what the capsule gives out with its centre at r metres on the axis
+// of the source, at f Hz, for a source that makes e^{−jkr}/r far away. With the
+// pressures at the front and rear entry p₁, p₂ and the pressure p₀ where the
+// pressure part is sensed:
+//
+//	summed       (1−β)·p₀ + β·(p₁ − p₂)/(jkd)
+//	phase-shift  (p₁ − p₂·e^{−jωτ}) / (jω(d/c + τ)),  τ = (d/c)(1−β)/β
+//
+// The open body has its entries at r ∓ d/2 and p₀ at r. The sphere of radius
+// a = d/3 has them at its poles; since a pressure element in such a body cannot
+// sit at its centre, p₀ is the mean of both poles. Both normalise to 1·e^{−jkr}/r
+// for a far source at low frequency. Source: H. F. Olson, Acoustical Engineering
+// (1957), for the forms (from memory); see polePressures for the sphere.
+func (m Model) Output(a Acoustics, r, f float64) complex128 {
+	e := newEvaluator(m, a, []float64{f})
+	return e.output(0, r)
+}
+
+// Far is the far-field form of Output: its limit for r → ∞ with e^{−jkr}/r
+// taken out. Its magnitude is 1 at low frequency and has a null where f is
+// about c/(d + cτ).
+func (m Model) Far(a Acoustics, f float64) complex128 {
+	k := 2 * math.Pi * f / a.Speed
+	if m.Body == Open {
+		half := k * a.Spacing / 2
+		return m.mix(a, k, cmplx.Rect(1, half), cmplx.Rect(1, -half), 1)
+	}
+	front, rear := planeOnPoles(k, a.Spacing/3)
+	return m.mix(a, k, front, rear, 0.5*(front+rear))
+}
+
+// mix joins the pressures to the capsule's output.
+func (m Model) mix(a Acoustics, k float64, front, rear, centre complex128) complex128 {
+	if m.Form == Summed {
+		return complex(1-a.Beta, 0)*centre + complex(a.Beta, 0)*(front-rear)/complex(0, k*a.Spacing)
+	}
+	delay := a.Spacing * (1 - a.Beta) / a.Beta // c·τ
+	return (front - rear*cmplx.Rect(1, -k*delay)) / complex(0, k*(a.Spacing+delay))
+}
+
+// Rise is the output at r relative to that for a far source which makes the
+// same free-field pressure at the capsule's centre: the near-field response over
+// the far-field response. Its magnitude for a point source and d → 0 is
+// |1 + β/(jkr)|.
+func (m Model) Rise(a Acoustics, r, f float64) complex128 {
+	return m.Output(a, r, f) / (m.freeField(a, r, f) * m.Far(a, f))
+}
+
+// freeField is the source's own pressure at r.
+func (m Model) freeField(a Acoustics, r, f float64) complex128 {
+	k := 2 * math.Pi * f / a.Speed
+	if m.Source == PistonSource {
+		return pistonPressure(k, r, a.Radius)
+	}
+	return pointPressure(k, r)
+}
+
+// CornerRate is w in rad/s of the first-order high-pass s/(s+w) that undoes the
+// rise at r at low frequency: w = qc where the rise tends to 1 + q/(jk). For a
+// point source and d → 0 that is βc/r. Source: limit of Rise.
+func (m Model) CornerRate(a Acoustics, r float64) float64 {
+	f := 0.02 * a.Speed / (2 * math.Pi * r)
+	rise := cmplx.Abs(m.Rise(a, r, f))
+	return 2 * math.Pi * f * math.Sqrt(math.Max(rise*rise-1, 0))
+}
+
+// HighestUse is the frequency in Hz up to which the rise means something: well
+// below the far form's null at c/(d + cτ).
+func (m Model) HighestUse(a Acoustics) float64 {
+	length := a.Spacing
+	if m.Form == PhaseShift {
+		length += a.Spacing * (1 - a.Beta) / a.Beta
+	}
+	return useShare * a.Speed / length
+}

@@ -1,0 +1,137 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+
+	"standoff/measure"
+)
+
+// Result says what the analysis found. Takes, polarity, version and what is
+// known of gate and clock are added by who knows them.
+func (a *Analysis) Result() *Result {
+	best := a.Best()
+	r := &Result{Schema: Schema, Polarity: "unknown", Capsule: a.capsule(), Models: a.candidates(), RiseTable: a.riseTable()}
+	r.Fit = FitSummary{
+		From: a.Data.Hz[0], To: a.Data.Hz[len(a.Data.Hz)-1],
+		ReducedChiSquare: best.ReducedChiSquare(), Points: len(a.Data.Hz) * len(a.Data.Points),
+		DegreesOfFreedom: best.Freedom, Status: best.Status.String(), Clock: measure.ClockCommon,
+		SpeedOfSound: best.Acoustics.Speed, SpeedExpanded: Coverage * best.SpeedSE,
+	}
+	if a.Data.FreeClock {
+		r.Fit.Clock = measure.ClockFree
+	}
+	for i, p := range a.Data.Points {
+		r.Distances = append(r.Distances, DistanceResult{
+			Label: p.Label, Nominal: p.Nominal, Fitted: best.Distances[i] - best.Setback,
+			FittedExpanded: Coverage * best.DistanceSE[i], Used: true, Flags: []measure.Flag{},
+			Alone: a.alone(i), Misfit: best.misfit[i],
+		})
+	}
+	r.Warnings = a.warnings(r)
+	return r
+}
+
+func (a *Analysis) capsule() CapsuleResult {
+	best := a.Best()
+	ac := best.Acoustics
+	betaU := math.Hypot(best.BetaSE, a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Beta }))
+	spacingU := math.Hypot(best.SpacingSE, a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Spacing }))
+	c := CapsuleResult{
+		Model: best.Model.Form, Body: best.Model.Body, Claimed: a.Claimed,
+		GradientFraction: mixValue(ac.Beta, betaU),
+		PortSpacing:      spacingValue(ac.Spacing, spacingU, ac.Beta, betaU, best.SpacingAtBound),
+		Setback:          resolved(best.Setback, best.SetbackSE, "m"),
+		SourceRadius:     resolved(ac.Radius, best.RadiusSE, "m"),
+	}
+	if best.BetaSE == 0 || best.BetaAtBound || !best.Status.Good() {
+		c.GradientFraction, c.PortSpacing = unresolved("1"), unresolved("m")
+	}
+	if !c.PortSpacing.Resolved {
+		c.PortSpacing.UpperLimit = a.upperSpacing()
+	}
+	if v := c.GradientFraction; v.Resolved {
+		c.Pattern = NearestPattern(*v.Value)
+		if a.Claimed != "" {
+			agrees := agreesWith(a.Claimed, *v.Value, *v.Expanded)
+			c.Agrees = &agrees
+		}
+	}
+	return c
+}
+
+// agreesWith reports whether some mix within the interval is nearest to the
+// pattern claimed.
+func agreesWith(claimed string, beta, expanded float64) bool {
+	for _, t := range []float64{-1, -0.5, 0, 0.5, 1} {
+		if NearestPattern(math.Min(math.Max(beta+t*expanded, 0), 1)) == claimed {
+			return true
+		}
+	}
+	return false
+}
+
+// misfitLimit is the reduced chi-square above which a model does not describe
+// the measurement: the uncertainties are widened, but the form is in doubt.
+const misfitLimit = 9
+
+func (a *Analysis) warnings(r *Result) []measure.Warning {
+	out := []measure.Warning{}
+	add := func(code, text, hint string) {
+		out = append(out, measure.Warning{Code: code, Text: text, Hint: hint})
+	}
+	c := r.Capsule
+	if !c.GradientFraction.Resolved {
+		add("mix-not-resolved", "the data do not hold the mix", "measure more distances between 30 mm and 600 mm, with less noise")
+	}
+	if !c.PortSpacing.Resolved {
+		add("spacing-not-resolved", a.whyNoSpacing(c), a.spacingHint(c))
+	}
+	if c.Agrees != nil && !*c.Agrees {
+		add("claim-disagrees", fmt.Sprintf("the mix is that of a %s, the rig claims a %s", c.Pattern, c.Claimed),
+			"is the pattern switch where it should be, and does the right side face the loudspeaker?")
+	}
+	if x := r.Fit.ReducedChiSquare; x > misfitLimit {
+		add("model-does-not-hold", fmt.Sprintf("the model leaves %.1f times more than the noise explains; the ± are widened to match", math.Sqrt(x)),
+			"look at the residuals: a reflection nearby, a source too large, or a capsule that is not first order")
+	}
+	for _, j := range a.equals()[1:] {
+		if a.delta(j) < tie && j.Model.Form != a.Best().Model.Form {
+			add("form-not-told", fmt.Sprintf("%v fits as well as %v; the difference is part of the ±", j.Model, a.Best().Model),
+				"say capsule.model in the rig when the build is known")
+			break
+		}
+	}
+	return out
+}
+
+func (a *Analysis) whyNoSpacing(c CapsuleResult) string {
+	text := "the data do not hold the port spacing"
+	if v := c.GradientFraction; v.Resolved && *v.Value-*v.Expanded < leastGradient {
+		text += ": there is next to no gradient part that it could belong to"
+	}
+	if u := c.PortSpacing.UpperLimit; u != nil {
+		text += fmt.Sprintf("; it is below %.0f mm (95 %%, one-sided)", math.Ceil(*u*1e3))
+	}
+	return text
+}
+
+func (a *Analysis) spacingHint(c CapsuleResult) string {
+	if v := c.GradientFraction; v.Resolved && *v.Value-*v.Expanded < leastGradient {
+		return "nothing to do: a pressure microphone has no port spacing"
+	}
+	hint := ""
+	if nearest := a.Data.nearest() - a.Data.Setback; nearest > 0.035 {
+		hint = "add a distance at or below 35 mm"
+	}
+	if a.Data.Radius > 0.020 {
+		if hint != "" {
+			hint += "; "
+		}
+		hint += "use a source of radius below 20 mm"
+	}
+	if hint == "" {
+		hint = "measure the nearest distances with a gauge, and the source's radius better than 1 mm"
+	}
+	return hint
+}

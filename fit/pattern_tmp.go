@@ -1,0 +1,4 @@
+package fit
+
+// NearestPattern placeholder until pattern.go is there.
+func NearestPattern(beta float64) string { return "" }

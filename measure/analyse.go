@@ -1,0 +1,193 @@
+package measure
+
+import (
+	"math"
+	"math/cmplx"
+
+	"standoff/measure/dsp"
+)
+
+// Analyser turns recordings of one excitation into impulse responses and judges
+// them. It carries scratch space: one goroutine at a time; Clone for another.
+type Analyser struct {
+	exc *Excitation
+	dec *dsp.Deconvolver
+	// Band in which the signal-to-noise ratio is judged, Hz.
+	from, to float64
+}
+
+// NewAnalyser prepares for recordings of up to longest samples. Signal to noise
+// is judged from..to Hz.
+func NewAnalyser(exc *Excitation, longest int, from, to float64) (*Analyser, error) {
+	x := make([]float64, len(exc.Samples))
+	for i, v := range exc.Samples {
+		x[i] = float64(v)
+	}
+	// Room for the longest response after a recording's last sample, so that
+	// nothing wraps on to what precedes the direct sound.
+	n := max(longest, len(x)) + exc.Rate/4
+	dec, err := dsp.NewDeconvolver(x, exc.Rate, exc.Low, exc.From, exc.To, exc.High, n)
+	if err != nil {
+		return nil, err
+	}
+	return &Analyser{exc: exc, dec: dec, from: math.Max(from, exc.From), to: math.Min(to, exc.To)}, nil
+}
+
+// Clone is an Analyser for another goroutine.
+func (a *Analyser) Clone() *Analyser {
+	b := *a
+	b.dec = a.dec.Clone()
+	return &b
+}
+
+// TakeAnalysis is what one recording says.
+type TakeAnalysis struct {
+	Impulse ImpulseResponse
+	Quality Quality
+	Flags   []Flag
+	Reasons []string // for people, one for every flag
+}
+
+// Quality are the figures by which a take is judged.
+type Quality struct {
+	Peak    float64 // largest |sample|, full scale 1
+	SNR     float64 // median over the fit band of signal power over noise power in the response
+	Arrival float64 // of the direct sound after the start of the sweep, less the latency that a loopback shows, s
+	Level   float64 // rms magnitude of the direct response from 1 to 6 kHz
+	Second  float64 // second harmonic's level relative to the fundamental; NaN when not known
+}
+
+// Take analyses one recording.
+func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
+	out := &TakeAnalysis{}
+	rate := float64(a.exc.Rate)
+	full := a.dec.Impulse(rec.Mic)
+	peak := steepest(full)
+	if peak > a.dec.Len()-a.exc.Rate/8 || peak > len(rec.Mic) {
+		peak -= a.dec.Len() // the recording began after the excitation did
+	}
+	ir := cutOut(full, rate, peak)
+	at := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
+	ir.Arrival = float64(ir.First) + at
+	ir.Noise = a.noise(rec.Mic, ir.Arrival)
+	if rec.Loopback != nil {
+		ir.Latency = a.latency(rec.Loopback)
+	}
+	out.Impulse = ir
+	out.Quality = Quality{Peak: peakOf(rec.Mic), Arrival: (ir.Arrival - ir.Latency) / rate, Second: a.second(full, peak)}
+	out.Quality.SNR, out.Quality.Level = a.levels(&ir)
+	a.judge(out, rec, full)
+	return out
+}
+
+// latency is the delay of a loopback recording in samples, fractional; 0 for a
+// loopback that carries nothing.
+func (a *Analyser) latency(loopback []float32) float64 {
+	if peakOf(loopback) < 1e-4 {
+		return 0
+	}
+	rate := float64(a.exc.Rate)
+	full := a.dec.Impulse(loopback)
+	ir := cutOut(full, rate, steepest(full))
+	return float64(ir.First) + directSound(ir.Samples, rate, a.exc.From, a.exc.To)
+}
+
+func peakOf(x []float32) float64 {
+	var p float32
+	for _, v := range x {
+		p = max(p, max(v, -v))
+	}
+	return float64(p)
+}
+
+// noise is the density of noise in the response: that of the recording where
+// the sweep has not arrived yet (or, when it begins too early, where it has
+// died away), times the deconvolution's gain.
+func (a *Analyser) noise(mic []float32, arrival float64) Density {
+	quiet := a.quiet(mic, arrival)
+	var d Density
+	for f := a.exc.Low; f < a.exc.High; f *= math.Exp2(1.0 / 6) {
+		d.Hz = append(d.Hz, f)
+	}
+	segment := min(len(quiet)/3, 8192)
+	power := dsp.PowerDensity(quiet, float64(a.exc.Rate), segment&^1, d.Hz)
+	if power == nil {
+		return Density{}
+	}
+	for i, f := range d.Hz {
+		power[i] = math.Max(power[i]*a.dec.NoiseGain(f), 1e-30)
+	}
+	d.Power = power
+	return d
+}
+
+// quiet is the longest of the stretches before the sweep's arrival and after
+// its decay.
+func (a *Analyser) quiet(mic []float32, arrival float64) []float64 {
+	guard := a.exc.Rate / 50
+	before := min(max(a.exc.Begin+int(arrival)-guard, 0), len(mic))
+	after := min(max(a.exc.End+int(arrival)+a.exc.Rate/2, 0), len(mic))
+	// What follows the sweep may still hold the room's decay: it is taken
+	// only when there is next to nothing before.
+	part := mic[:before]
+	if before < a.exc.Rate/10 && len(mic)-after > before {
+		part = mic[after:]
+	}
+	// A recorder may hand out digital zeros until its converter has settled,
+	// or until the first of its buffers has gone round.
+	for len(part) > 0 && part[0] == 0 {
+		part = part[1:]
+	}
+	out := make([]float64, len(part))
+	for i, v := range part {
+		out[i] = float64(v)
+	}
+	return out
+}
+
+// levels are the median of signal over noise power in the fit band and the rms
+// magnitude of the response in the arrival band, 20 ms around the direct sound.
+func (a *Analyser) levels(ir *ImpulseResponse) (snr, level float64) {
+	gate := Gate{Lead: 0.002, Length: 0.018, Fall: 0.008}
+	spec := ir.Spectrum(gate, 0, 0, logGrid(a.from, a.to, 24))
+	ratios := make([]float64, len(spec.Hz))
+	for i, v := range spec.Value {
+		ratios[i] = sq(cmplx.Abs(v)) / math.Max(spec.Variance[i], 1e-300)
+	}
+	lo, hi := arrivalLimits(a.exc.From, a.exc.To)
+	spec = ir.Spectrum(gate, 0, 0, logGrid(lo, hi, 16))
+	for _, v := range spec.Value {
+		level += sq(cmplx.Abs(v)) / float64(len(spec.Value))
+	}
+	return math.Max(Median(ratios)-1, 0), math.Sqrt(level)
+}
+
+func logGrid(from, to float64, n int) []float64 {
+	out := make([]float64, n)
+	for i := range out {
+		out[i] = from * math.Pow(to/from, float64(i)/float64(n-1))
+	}
+	return out
+}
+
+// second is the second harmonic's peak relative to the fundamental's.
+func (a *Analyser) second(full []float64, peak int) float64 {
+	if a.exc.L == 0 {
+		return math.NaN()
+	}
+	lead := int(math.Round(a.exc.L * math.Ln2 * float64(a.exc.Rate)))
+	reach := a.exc.Rate / 200
+	main := peakAround(full, peak, reach)
+	return peakAround(full, peak-lead, reach) / math.Max(main, 1e-300)
+}
+
+func peakAround(x []float64, at, reach int) float64 {
+	var p float64
+	for i := at - reach; i <= at+reach; i++ {
+		p = math.Max(p, math.Abs(x[((i%len(x))+len(x))%len(x)]))
+	}
+	return p
+}
+
+// Longest is the longest recording in samples that the Analyser can take.
+func (a *Analyser) Longest() int { return a.dec.Len() - a.exc.Rate/4 }

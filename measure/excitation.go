@@ -1,0 +1,115 @@
+package measure
+
+import (
+	"errors"
+	"math"
+
+	"standoff/measure/dsp"
+
+	"gonum.org/v1/gonum/dsp/fourier"
+)
+
+// Excitation is what was played: a sweep with silence before and after.
+type Excitation struct {
+	Samples []float32 // full scale ±1
+	Rate    int       // Hz
+	Begin   int       // sample at which the sweep begins
+	End     int       // sample after its last
+
+	// The band in Hz: flat from From to To, nothing below Low and above High.
+	Low, From, To, High float64
+
+	// L is the sweep's rate in s (see dsp.Sweep.L); 0 when it is not known.
+	L float64
+}
+
+// SweepExcitation samples a sweep at the given peak (full scale 1).
+func SweepExcitation(s dsp.Sweep, level float64) (*Excitation, error) {
+	if err := s.Validate(); err != nil {
+		return nil, err
+	}
+	if !(level > 0) || level > 1 {
+		return nil, errors.New("a sweep's level lies above 0 and at most at full scale")
+	}
+	x := s.Samples()
+	e := &Excitation{Samples: make([]float32, len(x)), Rate: s.SampleRate, L: s.L()}
+	for i, v := range x {
+		e.Samples[i] = float32(level * v)
+	}
+	e.From, e.To = s.From, s.To
+	e.Low, e.High = s.Edges()
+	e.Begin = s.Start()
+	e.End = len(x) - int(math.Round(s.After*float64(s.SampleRate)))
+	return e, nil
+}
+
+// SampledExcitation takes any sweep as it was played, and finds where it begins
+// and ends and the band that it fills: where its energy per octave is within
+// 20 dB of the strongest. It fails when that is less than two octaves.
+func SampledExcitation(x []float32, rate int) (*Excitation, error) {
+	e := &Excitation{Samples: x, Rate: rate}
+	var peak float32
+	for _, v := range x {
+		peak = max(peak, max(v, -v))
+	}
+	if peak == 0 || math.IsNaN(float64(peak)) {
+		return nil, errors.New("the excitation is silent")
+	}
+	e.Begin, e.End = extent(x, peak*1e-3)
+	e.From, e.To = filledBand(x, rate)
+	if !(e.To > 4*e.From) {
+		return nil, errors.New("the excitation fills less than two octaves: it is no sweep that can measure")
+	}
+	e.Low, e.High = e.From/math.Sqrt2, math.Min(e.To*1.12, 0.495*float64(rate))
+	return e, nil
+}
+
+func extent(x []float32, threshold float32) (begin, end int) {
+	begin, end = 0, len(x)
+	for begin < end && max(x[begin], -x[begin]) < threshold {
+		begin++
+	}
+	for end > begin && max(x[end-1], -x[end-1]) < threshold {
+		end--
+	}
+	return begin, end
+}
+
+// filledBand looks at the energy in sixths of an octave.
+func filledBand(x []float32, rate int) (from, to float64) {
+	n := dsp.FastLen(len(x))
+	buf := make([]float64, n)
+	for i, v := range x {
+		buf[i] = float64(v)
+	}
+	coef := fourier.NewFFT(n).Coefficients(nil, buf)
+	var centres, energies []float64
+	step := math.Exp2(1.0 / 6)
+	for f := 10.0; f*step < 0.49*float64(rate); f *= step {
+		lo, hi := int(f/float64(rate)*float64(n)), int(f*step/float64(rate)*float64(n))
+		var sum float64
+		for _, c := range coef[lo : hi+1] {
+			sum += real(c)*real(c) + imag(c)*imag(c)
+		}
+		centres, energies = append(centres, f*math.Sqrt(step)), append(energies, sum)
+	}
+	threshold := 0.01 * largestOf(energies)
+	for i, s := range energies {
+		if s < threshold {
+			continue
+		}
+		if from == 0 {
+			from = centres[i]
+		}
+		to = centres[i]
+	}
+	return from * step, to / step
+}
+
+func largestOf(x []float64) float64 {
+	m := math.Inf(-1)
+	for _, v := range x {
+		m = math.Max(m, v)
+	}
+	return m
+}

@@ -1,0 +1,104 @@
+package measure
+
+import (
+	"fmt"
+	"math"
+
+	"standoff/measure/dsp"
+)
+
+// Gate is the time window by which the direct sound is kept and the room left
+// out, relative to the arrival of the direct sound.
+type Gate struct {
+	Lead   float64 // s it opens before the arrival; it rises over the first half of that
+	Length float64 // s after the arrival at which it has closed
+	Fall   float64 // s of its closing, part of Length
+	Reason string  // why this length
+}
+
+// Duration is the effective length in s: of a rectangle with the same energy.
+func (g Gate) Duration() float64 { return g.Lead*0.75 + g.Length - g.Fall*0.625 }
+
+// The limits of a gate that is chosen by itself, s, and the part of it that
+// closes.
+const (
+	shortestGate = 0.003
+	longestGate  = 0.025
+	gateLead     = 0.0015
+	gateFall     = 0.4
+)
+
+// FixedGate is a gate of the given length, asked for by the rig.
+func FixedGate(length float64) Gate {
+	return Gate{Lead: gateLead, Length: length, Fall: gateFall * length, Reason: "set by the rig"}
+}
+
+// ChooseGate closes the gate before the first reflection that any response
+// shows, at the latest after 25 ms; when a reflection comes earlier than 3 ms
+// the gate stays at 3 ms and says so.
+func ChooseGate(responses []*ImpulseResponse, from, to float64) Gate {
+	first := math.Inf(1)
+	for _, ir := range responses {
+		first = math.Min(first, firstReflection(ir, from, to))
+	}
+	length, reason := longestGate, "no reflection within 25 ms"
+	switch {
+	case first < shortestGate:
+		length, reason = shortestGate, fmt.Sprintf("a reflection %.1f ms after the direct sound is inside the shortest gate", first*1e3)
+	case first < longestGate:
+		length, reason = first, fmt.Sprintf("first reflection %.1f ms after the direct sound", first*1e3)
+	}
+	g := FixedGate(length)
+	g.Reason = reason
+	return g
+}
+
+// reflectionLevel is the level from which something after the direct sound
+// counts as a reflection, relative to it, −32 dB.
+const reflectionLevel = 0.025
+
+// firstReflection is the time in s from the direct sound to the foot of the
+// first later maximum of the envelope that stands clear: above reflectionLevel,
+// above the noise, and at least 6 dB over the lowest point since the direct
+// sound. +Inf when there is none.
+func firstReflection(ir *ImpulseResponse, from, to float64) float64 {
+	lo, hi := math.Max(arrivalBand[0], from), math.Min(1.5*arrivalBand[1], to)
+	env := dsp.Envelope(ir.Samples, ir.Rate, lo, hi)
+	at := int(ir.Arrival) - ir.First
+	if at < 0 || at >= len(env) {
+		return math.Inf(1)
+	}
+	main, noise := env[at], noisePeak(ir, lo, hi)
+	lowest, foot := env[at], at
+	for i := at + int(0.001*ir.Rate); i < min(at+int(longestGate*1.2*ir.Rate), len(env)-1); i++ {
+		if env[i] < lowest {
+			lowest, foot = env[i], i
+		}
+		peak := env[i] >= env[i-1] && env[i] > env[i+1]
+		if peak && env[i] > math.Max(reflectionLevel*main, noise) && env[i] > 2*lowest {
+			return float64(footBefore(env, i, foot)-at) / ir.Rate
+		}
+	}
+	return math.Inf(1)
+}
+
+// footBefore is where the envelope on the way down from its maximum at i to the
+// lowest point has fallen to a tenth.
+func footBefore(env []float64, i, lowest int) int {
+	level := math.Max(0.1*env[i], 1.2*env[lowest])
+	for i > lowest && env[i] > level {
+		i--
+	}
+	return i
+}
+
+// noisePeak is what the envelope's noise seldom exceeds: four times its rms.
+func noisePeak(ir *ImpulseResponse, lo, hi float64) float64 {
+	var power float64
+	const steps = 50
+	for i := range steps {
+		f := lo + (hi-lo)*(float64(i)+0.5)/steps
+		power += ir.Noise.At(f) * (hi - lo) / steps / ir.Rate
+	}
+	return 4 * math.Sqrt(4*power) // analytic signal: twice the amplitude, one side
+}
