@@ -68,7 +68,7 @@ func newLone(d *Dataset, i int, others *Joint) *lone {
 	e := newEvaluator(others.Model, others.Acoustics, d.Hz)
 	for j := range d.Hz {
 		h := cmplx.Abs(e.output(j, l.place))
-		l.sigma = append(l.sigma, math.Sqrt((inflate*l.point.Variance[j]+h*h*others.farVariance[j])/2))
+		l.sigma = append(l.sigma, math.Sqrt((inflate*d.variance(i, j)+h*h*others.farVariance[j])/2))
 	}
 	return l
 }

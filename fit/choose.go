@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"slices"
 )
 
@@ -23,7 +24,68 @@ func (a *Analysis) Best() *Joint { return a.Candidates[0] }
 // Analyse fits every model and chooses. Frequencies at which the chosen model's
 // far response nears its null, where the rise means nothing, are left out and
 // the fit is made again.
+//
+// The dataset's Unexplained is estimated: the fit is made with a first guess, and
+// again with what the best model leaves over.
 func Analyse(d *Dataset, models []Model, claimed string) (*Analysis, error) {
+	guessed := *d
+	guessed.Unexplained = firstUnexplained
+	a, err := clearOfNull(&guessed, models, claimed)
+	if err != nil {
+		return nil, err
+	}
+	left := *a.Data
+	left.Unexplained = a.Best().unexplained()
+	return analyse(&left, models, claimed)
+}
+
+// Guess is Analyse without its refinements: for a first look at the rise.
+func Guess(d *Dataset, models []Model) (*Analysis, error) {
+	guessed := *d
+	guessed.Unexplained = firstUnexplained
+	return analyse(&guessed, models, "")
+}
+
+// What a response is thought to differ from the model before that is known, and
+// the least and the most that is believed afterwards, relative to its magnitude.
+const (
+	firstUnexplained = 0.003
+	leastUnexplained = 0.0003
+	mostUnexplained  = 0.1
+)
+
+// unexplained is the relative error which, beside the noise, makes the reduced
+// chi-square 1, found by bisection.
+func (j *Joint) unexplained() float64 {
+	p := newSeparable(j.data, j.Model)
+	p.evaluate(j.x)
+	chi := func(u float64) float64 {
+		var sum float64
+		for i, pt := range j.data.Points {
+			for n, y := range pt.Value {
+				r := y - scaled(p.h[i][n], p.sigma[i][n])*p.s[n]
+				a := cmplx.Abs(y)
+				sum += 2 * (real(r)*real(r) + imag(r)*imag(r)) / (pt.Variance[n] + u*u*a*a)
+			}
+		}
+		return sum / math.Max(float64(j.Freedom), 1)
+	}
+	lo, hi := leastUnexplained, mostUnexplained
+	if chi(lo) <= 1 {
+		return lo
+	}
+	for range 40 {
+		mid := math.Sqrt(lo * hi)
+		if chi(mid) > 1 {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	return hi
+}
+
+func clearOfNull(d *Dataset, models []Model, claimed string) (*Analysis, error) {
 	a, err := analyse(d, models, claimed)
 	if err != nil {
 		return nil, err

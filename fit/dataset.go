@@ -17,6 +17,13 @@ type Dataset struct {
 	Radius, RadiusUncertainty   float64 // b, m
 	Speed, SpeedUncertainty     float64 // c, m/s
 	FreeClock                   bool    // every response has a delay of its own
+
+	// Unexplained is what a response differs from any first-order model besides
+	// its noise, relative to its magnitude (standard, both quadratures together):
+	// what is left of the room, small movements, the capsule's own deviations.
+	// Analyse estimates it.
+	Unexplained float64
+	inflate     float64 // of all variances; 0 is 1
 }
 
 // Point is one distance.
@@ -25,7 +32,7 @@ type Point struct {
 	Nominal  float64      // grille to source, m
 	Tape     float64      // standard uncertainty of Nominal, m
 	Value    []complex128 // on Hz
-	Variance []float64    // E|error|² of Value
+	Variance []float64    // E|error|² of Value: noise
 }
 
 // Validate reports why a dataset cannot be fitted.
@@ -68,16 +75,16 @@ func (d *Dataset) without(i int) *Dataset {
 	return &out
 }
 
-// scaledBy multiplies all variances, for a misfit that noise does not explain.
+// variance is E|error|² of point i at frequency j, everything together.
+func (d *Dataset) variance(i, j int) float64 {
+	p := d.Points[i]
+	y := real(p.Value[j])*real(p.Value[j]) + imag(p.Value[j])*imag(p.Value[j])
+	return math.Max(d.inflate, 1) * (p.Variance[j] + d.Unexplained*d.Unexplained*y)
+}
+
+// scaledBy multiplies all variances, for a misfit that they do not explain.
 func (d *Dataset) scaledBy(factor float64) *Dataset {
 	out := *d
-	out.Points = append([]Point(nil), d.Points...)
-	for i := range out.Points {
-		v := append([]float64(nil), out.Points[i].Variance...)
-		for j := range v {
-			v[j] *= factor
-		}
-		out.Points[i].Variance = v
-	}
+	out.inflate = math.Max(d.inflate, 1) * factor
 	return &out
 }

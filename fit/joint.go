@@ -21,9 +21,13 @@ type Joint struct {
 	ChiSquare float64 // of the data, priors left out
 	Freedom   int     // degrees of freedom of the data
 	Status    lsq.Status
+	// Alike is how many neighbouring frequencies deviate alike: the integrated
+	// correlation of the residuals, at least 1. What is left of a room or of a
+	// model is no noise; that many points count as one.
+	Alike float64
 
 	// Standard uncertainties, the variance of the data scaled so that the
-	// reduced chi-square is at most 1. Zero at a bound.
+	// reduced chi-square is at most 1, and by Alike. Zero at a bound.
 	BetaSE, SpacingSE, SetbackSE, RadiusSE, SpeedSE float64
 	DistanceSE                                      []float64
 	BetaAtBound, SpacingAtBound                     bool
@@ -125,7 +129,8 @@ func summarise(d *Dataset, m Model, r *lsq.Result) (*Joint, error) {
 	out := &Joint{Model: m, Acoustics: p.acoustics(r.X), Setback: r.X[p.at.setback], Status: r.Status, data: d, x: r.X}
 	out.ChiSquare, out.misfit = chiSquares(res[:p.observations()], len(d.Points))
 	out.Freedom = p.observations() - 2*len(d.Hz) - 2
-	inflate := math.Max(out.ReducedChiSquare(), 1)
+	out.Alike = alike(res[:p.observations()], len(d.Points))
+	inflate := math.Max(out.ReducedChiSquare(), 1) * out.Alike
 	q := newSeparable(d.scaledBy(inflate), m)
 	again, err := lsq.Solve(q.problem(), r.X, lsq.Settings{MaxIterations: 25, FTol: 1e-8, XTol: 1e-7, Scale: q.scale()})
 	if err != nil {
@@ -153,6 +158,32 @@ func chiSquares(res []float64, points int) (total float64, each []float64) {
 		each[i] /= float64(n) * (1 - 1/float64(points))
 	}
 	return total, each
+}
+
+// alike is 1 + 2Σρ_k over the residuals' correlation ρ_k at the distance of k
+// frequencies, up to where it no longer stands clear of what white noise has by
+// chance (after the initial positive sequence of C. J. Geyer, Stat. Sci. 7, 473
+// (1992)).
+func alike(res []float64, points int) float64 {
+	n := len(res) / points // both quadratures, interleaved
+	at := func(lag int) (sum float64) {
+		for i := range points {
+			r := res[i*n : (i+1)*n]
+			for k := 0; k+2*lag < n; k++ {
+				sum += r[k] * r[k+2*lag]
+			}
+		}
+		return sum
+	}
+	total, tau := at(0), 1.0
+	for lag := 1; lag < n/4; lag++ {
+		rho := at(lag) / total
+		if !(rho > 2.5/math.Sqrt(float64(len(res)))) {
+			break
+		}
+		tau += 2 * rho
+	}
+	return tau
 }
 
 func (j *Joint) errors(p *separable, r *lsq.Result) {

@@ -99,13 +99,13 @@ func (m Model) freeField(a Acoustics, r, f float64) complex128 {
 	return pointPressure(k, r)
 }
 
-// CornerRate is w in rad/s of the first-order high-pass s/(s+w) that undoes the
-// rise at r at low frequency: w = qc where the rise tends to 1 + q/(jk). For a
-// point source and d → 0 that is βc/r. Source: limit of Rise.
-func (m Model) CornerRate(a Acoustics, r float64) float64 {
-	f := 0.02 * a.Speed / (2 * math.Pi * r)
-	rise := cmplx.Abs(m.Rise(a, r, f))
-	return 2 * math.Pi * f * math.Sqrt(math.Max(rise*rise-1, 0))
+// RiseForGate is Rise as a function of frequency for making responses compact
+// before they are gated: above HighestUse, where the rise means nothing, it stays
+// as it is there.
+func (m Model) RiseForGate(a Acoustics, r float64) func(f float64) complex128 {
+	top := m.HighestUse(a)
+	r = math.Max(r, m.nearestReach(a.Spacing)*1.001)
+	return func(f float64) complex128 { return m.Rise(a, r, math.Min(f, top)) }
 }
 
 // HighestUse is the frequency in Hz up to which the rise means something: well

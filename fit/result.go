@@ -82,6 +82,8 @@ type FitSummary struct {
 	From             float64 `json:"from_hz"`
 	To               float64 `json:"to_hz"`
 	ReducedChiSquare float64 `json:"reduced_chi_square"`
+	Unexplained      float64 `json:"unexplained"` // besides noise, relative, standard
+	Alike            float64 `json:"alike"`       // neighbouring frequencies that deviate together
 	Points           int     `json:"points"`
 	DegreesOfFreedom int     `json:"degrees_of_freedom"`
 	Gate             float64 `json:"gate_s"`

@@ -45,10 +45,10 @@ func newSeparable(d *Dataset, m Model) *separable {
 	}
 	p.sigma = make([][]float64, n)
 	p.h = make([][]complex128, n)
-	for i, pt := range d.Points {
+	for i := range d.Points {
 		p.sigma[i] = make([]float64, len(d.Hz))
-		for j, v := range pt.Variance {
-			p.sigma[i][j] = math.Sqrt(v / 2)
+		for j := range d.Hz {
+			p.sigma[i][j] = math.Sqrt(d.variance(i, j) / 2)
 		}
 		p.h[i] = make([]complex128, len(d.Hz))
 	}

@@ -46,7 +46,8 @@ func (a *Analysis) predictedRise(r, f float64) (dB, u float64) {
 	bySetback := (moved(0, 0, step) - dB) / step
 	c := best.covariance
 	variance := byBeta*byBeta*c[0][0] + bySpacing*bySpacing*c[1][1] + 2*byBeta*bySpacing*c[0][1] +
-		bySetback*bySetback*best.SetbackSE*best.SetbackSE
+		bySetback*bySetback*best.SetbackSE*best.SetbackSE +
+		byBeta*byBeta*methodBeta*methodBeta
 	return dB, math.Hypot(math.Sqrt(math.Max(variance, 0)), a.formUncertainty(value))
 }
 

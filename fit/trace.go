@@ -71,7 +71,7 @@ func (a *Analysis) measured(i, j int) (dB, expanded float64) {
 	best := a.Best()
 	y, s := cmplx.Abs(a.Data.Points[i].Value[j]), cmplx.Abs(best.far[j])
 	far := cmplx.Abs(best.Model.Far(best.Acoustics, a.Data.Hz[j]))
-	variance := unit(best)*a.Data.Points[i].Variance[j]/(2*y*y) + best.farVariance[j]/(2*s*s)
+	variance := unit(best)*a.Data.variance(i, j)/(2*y*y) + best.farVariance[j]/(2*s*s)
 	return decibels(y / (s * far)), Coverage * 20 / math.Ln10 * math.Sqrt(variance)
 }
 

@@ -149,13 +149,13 @@ func (a *Analyser) quiet(mic []float32, arrival float64) []float64 {
 // magnitude of the response in the arrival band, 20 ms around the direct sound.
 func (a *Analyser) levels(ir *ImpulseResponse) (snr, level float64) {
 	gate := Gate{Lead: 0.002, Length: 0.018, Fall: 0.008}
-	spec := ir.Spectrum(gate, 0, 0, logGrid(a.from, a.to, 24))
+	spec := ir.Spectrum(gate, nil, 0, logGrid(a.from, a.to, 24))
 	ratios := make([]float64, len(spec.Hz))
 	for i, v := range spec.Value {
 		ratios[i] = sq(cmplx.Abs(v)) / math.Max(spec.Variance[i], 1e-300)
 	}
 	lo, hi := arrivalLimits(a.exc.From, a.exc.To)
-	spec = ir.Spectrum(gate, 0, 0, logGrid(lo, hi, 16))
+	spec = ir.Spectrum(gate, nil, 0, logGrid(lo, hi, 16))
 	for _, v := range spec.Value {
 		level += sq(cmplx.Abs(v)) / float64(len(spec.Value))
 	}

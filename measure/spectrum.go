@@ -5,6 +5,8 @@ import (
 	"math/cmplx"
 
 	"standoff/measure/dsp"
+
+	"gonum.org/v1/gonum/dsp/fourier"
 )
 
 // Spectrum is a complex response with the variance of its noise.
@@ -14,21 +16,26 @@ type Spectrum struct {
 	Variance []float64 // E|error|², both quadratures together
 }
 
+// Rise is the near-field rise of a response over its far form, a slow complex
+// function of frequency in Hz; nil is none.
+type Rise func(hz float64) complex128
+
+// FirstOrderRise is 1 + w/(jω), the rise of a small capsule before a point source,
+// with the corner w in rad/s: βc/r.
+func FirstOrderRise(corner float64) Rise {
+	return func(f float64) complex128 { return complex(1, -corner/(2*math.Pi*f)) }
+}
+
 // Spectrum gates the response and transforms it. Time zero is origin samples
 // after the start of the excitation.
 //
 // A near-field rise is an integrator with a long tail that a short gate would
-// cut. So the response is first made compact by the rise's inverse, the
-// first-order high-pass
-//
-//	s/(s + w),  w = corner in rad/s,
-//
-// gated, and the high-pass is divided out again at each frequency, exactly as
-// the digital filter has it. corner 0 gates the response as it is.
-func (ir *ImpulseResponse) Spectrum(g Gate, corner, origin float64, hz []float64) Spectrum {
-	eq := newEqualiser(corner, ir.Rate)
+// cut. So the response is first made compact by dividing by its rise, then gated,
+// and at each frequency the rise is multiplied back.
+func (ir *ImpulseResponse) Spectrum(g Gate, rise Rise, origin float64, hz []float64) Spectrum {
+	table := tabulate(rise, ir.Rate)
 	from, window := g.window(ir)
-	x := eq.filter(ir.Samples)[from : from+len(window)]
+	x := ir.compact(table)[from : from+len(window)]
 	for i := range x {
 		x[i] *= window[i]
 	}
@@ -36,17 +43,74 @@ func (ir *ImpulseResponse) Spectrum(g Gate, corner, origin float64, hz []float64
 	out := Spectrum{Hz: hz, Value: value, Variance: make([]float64, len(hz))}
 	energy, blur := dsp.SumSquares(window), ir.Rate/float64(len(window))
 	for i, f := range hz {
-		h := eq.response(f)
-		out.Value[i] /= h
+		r := table.at(f)
+		out.Value[i] *= r
 		// The window smears what lies beside f into it.
 		var noise float64
 		for _, off := range []float64{-blur, 0, blur} {
 			near := math.Max(f+off, 0.25*blur)
-			noise += ir.Noise.At(near) * sq(cmplx.Abs(eq.response(near))) / 3
+			noise += ir.Noise.At(near) / sq(cmplx.Abs(table.at(near))) / 3
 		}
-		out.Variance[i] = noise * energy / sq(cmplx.Abs(h))
+		out.Variance[i] = noise * energy * sq(cmplx.Abs(r))
 	}
 	return out
+}
+
+// compact is the response divided by its rise, the same stretch of time.
+func (ir *ImpulseResponse) compact(t riseTable) []float64 {
+	n := len(ir.Samples)
+	if t.v == nil {
+		return append([]float64(nil), ir.Samples...)
+	}
+	m := dsp.FastLen(2 * n)
+	fft := fourier.NewFFT(m)
+	buf := make([]float64, m)
+	copy(buf, ir.Samples)
+	c := fft.Coefficients(nil, buf)
+	c[0] = 0 // an integrator has no inverse there, and a sweep no sound
+	for k := 1; k < len(c); k++ {
+		c[k] /= t.at(float64(k) * ir.Rate / float64(m))
+	}
+	fft.Sequence(buf, c)
+	for i := range n {
+		buf[i] /= float64(m)
+	}
+	return buf[:n]
+}
+
+// riseTable is a rise on a logarithmic grid. What it gives in between is a matter
+// of taste: the same table divides and multiplies back.
+type riseTable struct{ v []complex128 }
+
+const (
+	tableFrom      = 2.0 // Hz
+	tablePerOctave = 24
+)
+
+func tabulate(rise Rise, rate float64) riseTable {
+	if rise == nil {
+		return riseTable{}
+	}
+	n := int(math.Ceil(tablePerOctave*math.Log2(rate/2/tableFrom))) + 2
+	t := riseTable{make([]complex128, n)}
+	for i := range t.v {
+		t.v[i] = rise(tableFrom * math.Exp2(float64(i)/tablePerOctave))
+	}
+	return t
+}
+
+// at is the rise at f, linear in log f; below the table it goes on as 1/f.
+func (t riseTable) at(f float64) complex128 {
+	if t.v == nil {
+		return 1
+	}
+	if f <= tableFrom {
+		return t.v[0] * complex(tableFrom/math.Max(f, 1e-3), 0)
+	}
+	x := math.Log2(f/tableFrom) * tablePerOctave
+	i := min(int(x), len(t.v)-2)
+	u := math.Min(x-float64(i), 1)
+	return t.v[i]*complex(1-u, 0) + t.v[i+1]*complex(u, 0)
 }
 
 func sq(x float64) float64 { return x * x }
@@ -76,39 +140,6 @@ func raised(x float64) float64 {
 		return 1
 	}
 	return 0.5 - 0.5*math.Cos(math.Pi*x)
-}
-
-// equaliser is the digital first-order high-pass
-//
-//	H(z) = (1 − z⁻¹)/((1+K) − (1−K)·z⁻¹),  K = tan(w/2fs),
-//
-// the bilinear transform of s/(s+w).
-type equaliser struct{ k, rate float64 }
-
-func newEqualiser(corner, rate float64) equaliser {
-	return equaliser{k: math.Tan(math.Min(math.Max(corner, 0)/(2*rate), 1.5)), rate: rate}
-}
-
-func (e equaliser) filter(x []float64) []float64 {
-	out := make([]float64, len(x))
-	if e.k == 0 {
-		copy(out, x)
-		return out
-	}
-	var before, y float64
-	for i, v := range x {
-		y = (v - before + (1-e.k)*y) / (1 + e.k)
-		before, out[i] = v, y
-	}
-	return out
-}
-
-func (e equaliser) response(f float64) complex128 {
-	if e.k == 0 {
-		return 1
-	}
-	z := cmplx.Rect(1, -2*math.Pi*f/e.rate)
-	return (1 - z) / (complex(1+e.k, 0) - complex(1-e.k, 0)*z)
 }
 
 // Average is the mean of the repeats of one distance with its variance: the

@@ -42,7 +42,7 @@ type heard struct {
 type group struct {
 	distance measure.Distance
 	takes    []heard
-	corner   float64 // of the equaliser, rad/s
+	rise     measure.Rise // by which it is made compact for the gate
 	average  measure.Spectrum
 }
 
@@ -273,37 +273,40 @@ func (a *analysed) fitAll(ctx context.Context) error {
 	if err := ctx.Err(); err != nil {
 		return err
 	}
-	a.corners(guess(a.rig))
-	a.spectra(hz, clock)
-	first, err := fit.Analyse(a.dataset(hz, clock), []fit.Model{{Form: fit.Summed, Body: fit.Open, Source: a.rig.Source.Kind}}, "")
-	if err != nil {
-		return err
+	for i := range a.groups {
+		a.groups[i].rise = firstRise(a.rig, a.groups[i].distance)
 	}
-	b := first.Best()
-	a.corners(func(r float64) float64 { return b.Model.CornerRate(b.Acoustics, r) })
-	a.spectra(hz, clock)
-	if err := ctx.Err(); err != nil {
-		return err
+	for range rounds {
+		a.spectra(hz, clock)
+		first, err := fit.Guess(a.dataset(hz, clock), models(a.rig))
+		if err != nil {
+			return err
+		}
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		b := first.Best()
+		for i := range a.groups {
+			a.groups[i].rise = b.Model.RiseForGate(b.Acoustics, b.Distances[i])
+		}
 	}
+	a.spectra(hz, clock)
+	var err error
 	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed)
 	return err
 }
+
+// rounds is how often the rise is fitted before the final fit.
+const rounds = 2
 
 func (a *analysed) placed() []measure.Placed {
 	_, placed := a.acceptedTakes()
 	return placed
 }
 
-// guess is the corner of the rise before anything is known: that of a cardioid.
-func guess(r *rig.Rig) func(float64) float64 {
-	c := r.Air.SpeedOfSound()
-	return func(distance float64) float64 { return 0.5 * c / distance }
-}
-
-func (a *analysed) corners(of func(r float64) float64) {
-	for i := range a.groups {
-		a.groups[i].corner = of(a.groups[i].distance.Metres + a.rig.Capsule.Setback)
-	}
+// firstRise is the rise before anything is known: that of a cardioid.
+func firstRise(r *rig.Rig, d measure.Distance) measure.Rise {
+	return measure.FirstOrderRise(0.5 * r.Air.SpeedOfSound() / (d.Metres + r.Capsule.Setback))
 }
 
 func (a *analysed) chooseGate() measure.Gate {
@@ -338,7 +341,7 @@ func (a *analysed) spectrumOf(g group, hz []float64, clock string) measure.Spect
 		if clock == measure.ClockFree {
 			start = ir.Arrival - a.travel(g.distance)
 		}
-		repeats = append(repeats, ir.Spectrum(a.gate, g.corner, start, hz))
+		repeats = append(repeats, ir.Spectrum(a.gate, g.rise, start, hz))
 	}
 	return measure.Average(repeats)
 }
@@ -359,11 +362,6 @@ func (a *analysed) commonStart() float64 {
 	return measure.Median(starts)
 }
 
-// relativeFloor is what limits a response besides noise, as a fraction of it
-// (both quadratures together): what is left of the room, small movements,
-// rounding of the model.
-const relativeFloor = 0.003
-
 func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 	r := a.rig
 	d := &fit.Dataset{
@@ -376,11 +374,8 @@ func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 		d.Radius, d.RadiusUncertainty = 0, 1e-3
 	}
 	for _, g := range a.groups {
-		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty, Value: g.average.Value}
-		for j, v := range g.average.Value {
-			floor := relativeFloor * relativeFloor * (real(v)*real(v) + imag(v)*imag(v))
-			p.Variance = append(p.Variance, g.average.Variance[j]+floor+1e-300)
-		}
+		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty,
+			Value: g.average.Value, Variance: g.average.Variance}
 		d.Points = append(d.Points, p)
 	}
 	return d

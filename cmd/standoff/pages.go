@@ -56,7 +56,7 @@ func (a *analysed) response(g group) report.Response {
 		level := math.Max(cmplx.Abs(v), 1e-12)
 		out.DB = append(out.DB, dB(level))
 		out.Degrees = append(out.Degrees, cmplx.Phase(v)*180/math.Pi)
-		relative := math.Hypot(math.Sqrt(spec.Variance[j]), relativeFloor*level) / (math.Sqrt2 * level)
+		relative := math.Hypot(math.Sqrt(spec.Variance[j]), a.result.Fit.Unexplained*level) / (math.Sqrt2 * level)
 		out.Expanded = append(out.Expanded, fit.Coverage*20/math.Ln10*relative)
 	}
 	return out

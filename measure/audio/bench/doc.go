@@ -1,0 +1,31 @@
+// Package bench is a recorder without hardware: a virtual bench that computes
+// what a microphone in front of a small loudspeaker would have recorded.
+//
+// It makes sound from geometry, and knows nothing of the formulas that are
+// fitted later: the source is a set of rings of monopoles, the capsule two ports
+// at which the pressure is computed, the room a lattice of mirror images.
+//
+//	excitation → distortion → loudspeaker → air, room → ports → capsule → preamplifier → converter
+//
+// One transfer function per distance carries everything linear:
+//
+//	H(ω) = S·r₀·A(ω)·e^{−jωt₀}·C(p_front, p_rear, p_centre; ω)
+//
+// with the sensitivity S, the reference distance r₀ = 30 mm, the filters A of
+// loudspeaker, capsule and preamplifier, the latency t₀ and the capsule's mix C.
+// The pressures are those of a source that gives e^{−jkR}/R far away, plus the
+// images of the room. Time factor e^{+jωt}, SI units, full scale ±1.
+//
+// # Level
+//
+// A capsule of sensitivity 1 whose far response is flat brings the excitation
+// back at its own level when it is 30 mm from a point source, and at 0.03/r of
+// it at r metres. A sweep at −20 dBFS and a sensitivity of 0.5 then leave a
+// figure-8 at 30 mm some 5 dB below full scale in spite of its rise, and the
+// take at 600 mm 40 dB above a noise of −95 dBFS even before deconvolution.
+//
+// # What it leaves out
+//
+// Sound that goes to and fro between capsule and baffle; the directivity and the
+// directivity of the loudspeaker towards the walls; absorption in air.
+package bench

@@ -1,0 +1,73 @@
+package bench
+
+import "math"
+
+// Where loudspeaker and microphone stand in the room: the loudspeaker at these
+// parts of length, width and height, the microphone before it along the length.
+var standsAt = [3]float64{0.37, 0.46, 0.48}
+
+// clearance of the microphone from the wall before it, m.
+const clearance = 0.3
+
+// image is a mirror image of the loudspeaker as the capsule's centre sees it.
+type image struct {
+	distance float64 // m
+	cos      float64 // of the angle from the capsule's axis; 1 is in front
+	strength float64 // of the pressure: the walls' reflection factors multiplied
+}
+
+// holds reports whether a microphone at r stands in the room.
+func (r *Room) holds(distance float64) bool {
+	return standsAt[0]*r.Size[0]+distance+clearance < r.Size[0]
+}
+
+// imageOrder is the number of reflections that are followed; what comes later is
+// weaker by reflection^imageOrder and arrives when every gate has closed.
+const imageOrder = 4
+
+// images of the loudspeaker in a shoebox room. Along each axis they stand at
+// 2mL + s and 2mL − s, after |2m| and |2m−1| reflections. Source: J. B. Allen,
+// D. A. Berkley, J. Acoust. Soc. Am. 65, 943 (1979) (from memory).
+func (b *Bench) images(r float64) []image {
+	room := b.cfg.Room
+	if room == nil || room.Reflection == 0 {
+		return nil
+	}
+	var along [3][]mirrored
+	for axis, size := range room.Size {
+		along[axis] = mirror(standsAt[axis]*size, size)
+	}
+	microphone := [3]float64{standsAt[0]*room.Size[0] + r, standsAt[1] * room.Size[1], standsAt[2] * room.Size[2]}
+	var out []image
+	for _, x := range along[0] {
+		for _, y := range along[1] {
+			for _, z := range along[2] {
+				order := x.order + y.order + z.order
+				if order == 0 || order > imageOrder {
+					continue
+				}
+				dx, dy, dz := x.at-microphone[0], y.at-microphone[1], z.at-microphone[2]
+				distance := math.Sqrt(dx*dx + dy*dy + dz*dz)
+				// The capsule looks back along −x at the loudspeaker.
+				out = append(out, image{distance, -dx / distance, math.Pow(room.Reflection, float64(order))})
+			}
+		}
+	}
+	return out
+}
+
+type mirrored struct {
+	at    float64
+	order int
+}
+
+// mirror is the source's place and its images along one axis.
+func mirror(source, size float64) []mirrored {
+	var out []mirrored
+	for m := -imageOrder; m <= imageOrder; m++ {
+		out = append(out, mirrored{2*float64(m)*size + source, abs(2 * m)}, mirrored{2*float64(m)*size - source, abs(2*m - 1)})
+	}
+	return out
+}
+
+func abs(n int) int { return max(n, -n) }
