@@ -7,6 +7,7 @@ import (
 	"math"
 	"math/cmplx"
 	"slices"
+	"sync"
 )
 
 // Analysis is the joint fit of a dataset by every model allowed, the chosen one
@@ -15,7 +16,6 @@ type Analysis struct {
 	Data       *Dataset
 	Candidates []*Joint
 	Claimed    string
-	failed     []string
 }
 
 // Best is the chosen candidate.
@@ -27,23 +27,25 @@ func (a *Analysis) Best() *Joint { return a.Candidates[0] }
 //
 // The dataset's Unexplained is estimated: the fit is made with a first guess, and
 // again with what the best model leaves over.
-func Analyse(d *Dataset, models []Model, claimed string) (*Analysis, error) {
+//
+// before, an earlier look at much the same data, gives the starts; nil is none.
+func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Analysis, error) {
 	guessed := *d
 	guessed.Unexplained = firstUnexplained
-	a, err := clearOfNull(&guessed, models, claimed)
+	a, err := clearOfNull(&guessed, models, claimed, before)
 	if err != nil {
 		return nil, err
 	}
 	left := *a.Data
 	left.Unexplained = a.Best().unexplained()
-	return analyse(&left, models, claimed)
+	return analyse(&left, models, claimed, a)
 }
 
 // Guess is Analyse without its refinements: for a first look at the rise.
-func Guess(d *Dataset, models []Model) (*Analysis, error) {
+func Guess(d *Dataset, models []Model, before *Analysis) (*Analysis, error) {
 	guessed := *d
 	guessed.Unexplained = firstUnexplained
-	return analyse(&guessed, models, "")
+	return analyse(&guessed, models, "", before)
 }
 
 // What a response is thought to differ from the model before that is known, and
@@ -85,8 +87,8 @@ func (j *Joint) unexplained() float64 {
 	return hi
 }
 
-func clearOfNull(d *Dataset, models []Model, claimed string) (*Analysis, error) {
-	a, err := analyse(d, models, claimed)
+func clearOfNull(d *Dataset, models []Model, claimed string, before *Analysis) (*Analysis, error) {
+	a, err := analyse(d, models, claimed, before)
 	if err != nil {
 		return nil, err
 	}
@@ -96,7 +98,7 @@ func clearOfNull(d *Dataset, models []Model, claimed string) (*Analysis, error) 
 		return a, nil
 	}
 	if cut := d.below(limit); len(cut.Hz) >= 8 {
-		return analyse(cut, models, claimed)
+		return analyse(cut, models, claimed, nil)
 	}
 	return a, nil
 }
@@ -108,22 +110,37 @@ const (
 	useShare  = 0.4
 )
 
-func analyse(d *Dataset, models []Model, claimed string) (*Analysis, error) {
+func analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Analysis, error) {
 	a := &Analysis{Data: d, Claimed: claimed}
-	var errs []error
-	for _, m := range models {
-		j, err := FitModel(d, m)
-		if err != nil {
-			errs = append(errs, err)
-			continue
+	fitted, errs := make([]*Joint, len(models)), make([]error, len(models))
+	var wg sync.WaitGroup
+	for i, m := range models {
+		wg.Go(func() { fitted[i], errs[i] = fitModel(d, m, before.find(m)) })
+	}
+	wg.Wait()
+	for _, j := range fitted {
+		if j != nil {
+			a.Candidates = append(a.Candidates, j)
 		}
-		a.Candidates = append(a.Candidates, j)
 	}
 	if len(a.Candidates) == 0 {
 		return nil, errors.Join(errs...)
 	}
 	a.order()
 	return a, nil
+}
+
+// find is the candidate of a model, nil where there is none.
+func (a *Analysis) find(m Model) *Joint {
+	if a == nil {
+		return nil
+	}
+	for _, j := range a.Candidates {
+		if j.Model == m {
+			return j
+		}
+	}
+	return nil
 }
 
 // Of two models whose misfits differ by less than tie, in units of the best

@@ -49,7 +49,7 @@ func (d *Dataset) Validate() error {
 		}
 		for j, v := range p.Value {
 			s := math.Abs(real(v)) + math.Abs(imag(v)) + p.Variance[j]
-			if math.IsNaN(s) || math.IsInf(s, 0) || !(p.Variance[j] > 0) {
+			if math.IsNaN(s) || math.IsInf(s, 0) || p.Variance[j] < 0 {
 				return fmt.Errorf("%s: the response at %.0f Hz is no usable number", p.Label, d.Hz[j])
 			}
 		}
@@ -79,7 +79,9 @@ func (d *Dataset) without(i int) *Dataset {
 func (d *Dataset) variance(i, j int) float64 {
 	p := d.Points[i]
 	y := real(p.Value[j])*real(p.Value[j]) + imag(p.Value[j])*imag(p.Value[j])
-	return math.Max(d.inflate, 1) * (p.Variance[j] + d.Unexplained*d.Unexplained*y)
+	// A recording with digital silence has no noise at all; rounding it has.
+	const rounding = 1e-12
+	return math.Max(d.inflate, 1) * (p.Variance[j] + (d.Unexplained*d.Unexplained+rounding)*y)
 }
 
 // scaledBy multiplies all variances, for a misfit that they do not explain.

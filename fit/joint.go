@@ -45,7 +45,10 @@ type Joint struct {
 func (j *Joint) ReducedChiSquare() float64 { return j.ChiSquare / math.Max(float64(j.Freedom), 1) }
 
 // FitModel fits one model to a dataset from several starts and keeps the best.
-func FitModel(d *Dataset, m Model) (*Joint, error) {
+func FitModel(d *Dataset, m Model) (*Joint, error) { return fitModel(d, m, nil) }
+
+// fitModel starts from an earlier solution where there is one.
+func fitModel(d *Dataset, m Model, before *Joint) (*Joint, error) {
 	if err := m.validate(); err != nil {
 		return nil, err
 	}
@@ -53,7 +56,13 @@ func FitModel(d *Dataset, m Model) (*Joint, error) {
 		return nil, err
 	}
 	p := newSeparable(d, m)
-	best, err := solveFrom(p, p.scan(2))
+	starts := [][]float64{}
+	if before != nil && before.Status.Good() && len(before.x) == p.at.n {
+		starts = append(starts, before.x)
+	} else {
+		starts = p.scan(2)
+	}
+	best, err := solveFrom(p, starts)
 	if err != nil {
 		return nil, err
 	}

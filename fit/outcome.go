@@ -3,6 +3,7 @@ package fit
 import (
 	"fmt"
 	"math"
+	"sync"
 
 	"standoff/measure"
 )
@@ -21,15 +22,26 @@ func (a *Analysis) Result() *Result {
 	if a.Data.FreeClock {
 		r.Fit.Clock = measure.ClockFree
 	}
+	alone := a.eachAlone()
 	for i, p := range a.Data.Points {
 		r.Distances = append(r.Distances, DistanceResult{
 			Label: p.Label, Nominal: p.Nominal, Fitted: best.Distances[i] - best.Setback,
 			FittedExpanded: Coverage * best.DistanceSE[i], Used: true, Flags: []measure.Flag{},
-			Alone: a.alone(i), Misfit: best.misfit[i],
+			Alone: alone[i], Misfit: best.misfit[i],
 		})
 	}
 	r.Warnings = a.warnings(r)
 	return r
+}
+
+func (a *Analysis) eachAlone() []Alone {
+	out := make([]Alone, len(a.Data.Points))
+	var wg sync.WaitGroup
+	for i := range out {
+		wg.Go(func() { out[i] = a.alone(i) })
+	}
+	wg.Wait()
+	return out
 }
 
 func (a *Analysis) capsule() CapsuleResult {

@@ -128,19 +128,19 @@ func (p *separable) residuals(dst, x []float64) {
 	}
 }
 
-// jacobian is Kaufman's, with central differences of the model only.
+// jacobian is Kaufman's, with forward differences of the model only.
 func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	p.evaluate(x)
-	dist := p.derivative(x, p.at.setback, 2e-6)
+	dist := p.derivative(x, p.at.setback, 2e-8)
 	p.project(dst, p.at.setback, dist, -1)
 	for i := range p.data.Points {
 		p.project(dst, p.at.tape+i, dist, i)
 	}
-	p.project(dst, p.at.beta, p.derivative(x, p.at.beta, 1e-5), -1)
-	p.project(dst, p.at.spacing, p.derivative(x, p.at.spacing, 1e-6), -1)
-	p.project(dst, p.at.speed, p.derivative(x, p.at.speed, 1e-3), -1)
+	p.project(dst, p.at.beta, p.derivative(x, p.at.beta, 1e-6), -1)
+	p.project(dst, p.at.spacing, p.derivative(x, p.at.spacing, 2e-8), -1)
+	p.project(dst, p.at.speed, p.derivative(x, p.at.speed, 1e-4), -1)
 	if p.model.Source == PistonSource {
-		p.project(dst, p.at.radius, p.derivative(x, p.at.radius, 2e-6), -1)
+		p.project(dst, p.at.radius, p.derivative(x, p.at.radius, 2e-8), -1)
 	}
 	if p.data.FreeClock {
 		p.delays(dst)
@@ -154,17 +154,15 @@ func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	}
 }
 
-// derivative of h by one parameter.
+// derivative of h, which is that of x, by one parameter.
 func (p *separable) derivative(x []float64, param int, step float64) [][]complex128 {
-	plus, minus := p.grid(), p.grid()
+	plus := p.grid()
 	y := append([]float64(nil), x...)
-	y[param] = x[param] + step
+	y[param] += step
 	p.fill(plus, y)
-	y[param] = x[param] - step
-	p.fill(minus, y)
 	for i := range plus {
 		for j := range plus[i] {
-			plus[i][j] = scaled(plus[i][j]-minus[i][j], 0.5/step)
+			plus[i][j] = scaled(plus[i][j]-p.h[i][j], 1/step)
 		}
 	}
 	return plus
@@ -294,7 +292,7 @@ func (p *separable) settleDelays(x []float64) {
 	}
 }
 
-// phaseSlope is the delay t in s that makes Σ z·e^{jωt}/|z| largest, found by
+// phaseSlope is the delay t in s, within some ms, that makes Σ z·e^{jωt}/|z| largest, found by
 // search and refinement.
 func phaseSlope(z []complex128, hz []float64) float64 {
 	score := func(t float64) float64 {
@@ -308,7 +306,7 @@ func phaseSlope(z []complex128, hz []float64) float64 {
 	}
 	best, at := math.Inf(-1), 0.0
 	step := 0.1 / hz[len(hz)-1]
-	for i := -400; i <= 400; i++ {
+	for i := -60; i <= 60; i++ {
 		if s := score(float64(i) * step); s > best {
 			best, at = s, float64(i)*step
 		}

@@ -23,9 +23,10 @@ func NewAnalyser(exc *Excitation, longest int, from, to float64) (*Analyser, err
 	for i, v := range exc.Samples {
 		x[i] = float64(v)
 	}
-	// Room for the longest response after a recording's last sample, so that
-	// nothing wraps on to what precedes the direct sound.
-	n := max(longest, len(x)) + exc.Rate/4
+	// Room after a recording's last sample: for a response that is still going on,
+	// and for what seems to come before the excitation, because the recording was
+	// started late or something took a delay away.
+	n := max(longest, len(x)) + exc.Rate
 	dec, err := dsp.NewDeconvolver(x, exc.Rate, exc.Low, exc.From, exc.To, exc.High, n)
 	if err != nil {
 		return nil, err
@@ -63,8 +64,8 @@ func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
 	rate := float64(a.exc.Rate)
 	full := a.dec.Impulse(rec.Mic)
 	peak := steepest(full)
-	if peak > a.dec.Len()-a.exc.Rate/8 || peak > len(rec.Mic) {
-		peak -= a.dec.Len() // the recording began after the excitation did
+	if peak > a.dec.Len()-3*a.exc.Rate/4 {
+		peak -= a.dec.Len() // it came before the excitation
 	}
 	ir := cutOut(full, rate, peak)
 	at := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
@@ -190,4 +191,4 @@ func peakAround(x []float64, at, reach int) float64 {
 }
 
 // Longest is the longest recording in samples that the Analyser can take.
-func (a *Analyser) Longest() int { return a.dec.Len() - a.exc.Rate/4 }
+func (a *Analyser) Longest() int { return a.dec.Len() - a.exc.Rate }

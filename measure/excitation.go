@@ -52,8 +52,8 @@ func SampledExcitation(x []float32, rate int) (*Excitation, error) {
 	for _, v := range x {
 		peak = max(peak, max(v, -v))
 	}
-	if peak == 0 || math.IsNaN(float64(peak)) {
-		return nil, errors.New("the excitation is silent")
+	if !(peak > 0) || math.IsInf(float64(peak), 1) {
+		return nil, errors.New("the excitation is silent, or holds what is no number")
 	}
 	e.Begin, e.End = extent(x, peak*1e-3)
 	e.From, e.To = filledBand(x, rate)

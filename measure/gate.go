@@ -17,7 +17,7 @@ type Gate struct {
 }
 
 // Duration is the effective length in s: of a rectangle with the same energy.
-func (g Gate) Duration() float64 { return g.Lead*0.75 + g.Length - g.Fall*0.625 }
+func (g Gate) Duration() float64 { return g.Lead*0.6875 + g.Length - g.Fall*0.625 }
 
 // The limits of a gate that is chosen by itself, s, and the part of it that
 // closes.

@@ -3,7 +3,6 @@ package measure
 import (
 	"fmt"
 	"math"
-	"slices"
 )
 
 // Limits by which a single take is judged.
@@ -14,7 +13,12 @@ const (
 	lowSNR        = 100.0  // power ratio, 20 dB
 	flatRun       = 48     // equal samples in a row in the middle of a sweep
 	distortedBy   = 0.1    // second harmonic relative to the fundamental
-	dropoutFactor = 12.0   // residual of a 5 ms block over the median block's
+	dropoutFactor = 9.0    // what a block has that cannot be real, over the median block's
+	dropoutShare  = 0.05   // the same, over the level of the blocks around
+	blockTime     = 0.005  // s
+	harmonicAfter = 0.1    // s that a harmonic may ring
+	realBefore    = 0.03   // s before its peak at which a sound may begin
+	realAfter     = 0.5    // s that the room may ring
 )
 
 // judge flags what is wrong with a single take.
@@ -60,19 +64,17 @@ func clipped(x []float32) int {
 func (a *Analyser) dropout(mic []float32, full []float64, arrival float64) (at float64, found bool) {
 	begin := min(max(a.exc.Begin+int(arrival), 0), len(mic))
 	end := min(max(a.exc.End+int(arrival), begin), len(mic))
-	run := 1
-	for i := begin + 1; i < end; i++ {
-		if mic[i] != mic[i-1] {
-			run = 1
-			continue
+	for i := begin; i < end; {
+		first := i
+		for i++; i < end && mic[i] == mic[first]; i++ {
 		}
 		// At the sweep's slow beginning neighbouring samples may well be equal
 		// in 16 bits: only a run with sound on both sides counts.
-		if run++; run == flatRun && a.loudAround(mic, i-flatRun, i+8*flatRun) {
-			return float64(i) / float64(a.exc.Rate), true
+		if i-first >= flatRun && a.loudAround(mic, first, i) {
+			return float64(first) / float64(a.exc.Rate), true
 		}
 	}
-	return a.unexplained(mic, full, begin, end, int(arrival))
+	return a.unexplained(full, begin, end, int(arrival))
 }
 
 func (a *Analyser) loudAround(mic []float32, before, after int) bool {
@@ -88,51 +90,54 @@ func (a *Analyser) loudAround(mic []float32, before, after int) bool {
 	return rms(before-reach, before) > 3e-4 && rms(after, after+reach) > 3e-4
 }
 
-// unexplained plays the excitation through the part of the response that can be
-// real (from the fifth harmonic to half a second after the direct sound) and
-// looks for 5 ms blocks in which the recording differs from that by far more than
-// in the median block, and by more than a twentieth of the block's own level.
-func (a *Analyser) unexplained(mic []float32, full []float64, begin, end, arrival int) (at float64, found bool) {
-	rate := a.exc.Rate
-	lead := int(math.Ceil(a.exc.L*math.Log(5)*float64(rate))) + rate/50
-	if a.exc.L == 0 {
-		lead = rate / 50
+// unexplained looks for 5 ms blocks of what no loudspeaker and room can have made
+// of the excitation. Lost data splash: what is wrong at the moment of one frequency
+// stands beside the direct sound by the time that the sweep takes from there to
+// the frequencies that it splashes to. So what can be real is taken out of the
+// response (half a second from just before the direct sound, and a stretch for each
+// harmonic up to the fifth), and the excitation is played through the rest.
+func (a *Analyser) unexplained(full []float64, begin, end, arrival int) (at float64, found bool) {
+	rate, l := float64(a.exc.Rate), a.exc.L
+	rest := append([]float64(nil), full...)
+	blank(rest, arrival-int(realBefore*rate), arrival+int(realAfter*rate))
+	for n := 2.0; n <= 5; n++ {
+		harmonic := float64(arrival) - l*math.Log(n)*rate
+		after := math.Max(math.Min(harmonicAfter, 0.15*l), realBefore/2)
+		blank(rest, int(harmonic-realBefore/2*rate), int(harmonic+after*rate))
 	}
-	back := a.dec.Forward(keepOnly(full, arrival-lead, arrival+rate/2))
-	block := rate / 200
-	var residual, level []float64
-	for i := begin; i+block <= end; i += block {
-		var r, l float64
-		for j := i; j < i+block; j++ {
-			r += sq(float64(mic[j]) - back[j])
-			l += sq(float64(mic[j]))
-		}
-		residual, level = append(residual, math.Sqrt(r)), append(level, math.Sqrt(l))
-	}
+	// The sweep's ends lie outside the band and next to it.
+	from, to := begin+(end-begin)/5, end-(end-begin)/10
+	level, residual := a.blocks(a.dec.Forward(full), from, to), a.blocks(a.dec.Forward(rest), from, to)
 	if len(residual) < 40 {
 		return 0, false
 	}
-	// The fades at both ends lie outside the band and are never explained.
-	skip := len(residual) / 10
-	inner, innerLevel := residual[skip:len(residual)-skip], level[skip:len(level)-skip]
-	typical := Median(inner)
-	worst := slices.Index(inner, slices.Max(inner))
-	if inner[worst] > dropoutFactor*typical && inner[worst] > 0.05*Median(innerLevel) {
-		return float64(begin+(skip+worst)*block) / float64(rate), true
+	typical := Median(residual)
+	for i, r := range residual {
+		around := level[max(i-10, 0):min(i+11, len(level))]
+		if r > dropoutFactor*typical && r > dropoutShare*Median(around) {
+			return float64(from)/rate + float64(i)*blockTime, true
+		}
 	}
 	return 0, false
 }
 
-// keepOnly is x with everything outside [from, to) zeroed, circularly.
-func keepOnly(x []float64, from, to int) []float64 {
-	out := make([]float64, len(x))
-	if to-from >= len(x) {
-		copy(out, x)
-		return out
-	}
-	for i := from; i < to; i++ {
-		k := ((i % len(x)) + len(x)) % len(x)
-		out[k] = x[k]
+// blocks are the rms values of x in blocks of blockTime.
+func (a *Analyser) blocks(x []float64, from, to int) []float64 {
+	n := int(blockTime * float64(a.exc.Rate))
+	var out []float64
+	for ; from+n <= min(to, len(x)); from += n {
+		var sum float64
+		for _, v := range x[from : from+n] {
+			sum += v * v
+		}
+		out = append(out, math.Sqrt(sum/float64(n)))
 	}
 	return out
+}
+
+// blank zeroes [from, to) of x, circularly.
+func blank(x []float64, from, to int) {
+	for i := from; i < min(to, from+len(x)); i++ {
+		x[((i%len(x))+len(x))%len(x)] = 0
+	}
 }

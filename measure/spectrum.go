@@ -119,7 +119,7 @@ func sq(x float64) float64 { return x * x }
 // the response ends.
 func (g Gate) window(ir *ImpulseResponse) (from int, w []float64) {
 	at := ir.Arrival - float64(ir.First)
-	from = max(int(math.Floor(at-g.Lead*ir.Rate)), 0)
+	from = min(max(int(math.Floor(at-g.Lead*ir.Rate)), 0), len(ir.Samples))
 	to := min(int(math.Ceil(at+g.Length*ir.Rate)), len(ir.Samples))
 	w = make([]float64, max(to-from, 0))
 	for i := range w {

@@ -37,11 +37,12 @@ func testAnalyser(t testing.TB) *Analyser {
 }
 
 // scene is what a recording is made of: gain and delay in samples, an integrator
-// 1 + w/(jω), an echo, a distortion x + second·x² + third·x³ before all that, and
-// hum and white noise on top.
+// 1 + w/(jω), an echo, a loudspeaker with a high-pass of second order and, before
+// that, a distortion x + second·x² + third·x³, and hum and white noise on top.
 type scene struct {
 	gain, delay     float64
 	w               float64 // rad/s
+	highPass        float64 // Hz
 	echo, echoDelay float64 // relative to the direct sound; samples
 	second, third   float64
 	hum, noise      float64
@@ -65,6 +66,10 @@ func (s scene) record(e *Excitation) []float32 {
 			continue
 		}
 		h := complex(s.gain, 0) * (1 + complex(0, -s.w/(w*float64(e.Rate))))
+		if s.highPass > 0 {
+			u := complex(0, w*float64(e.Rate)/(2*math.Pi*s.highPass))
+			h *= u * u / (u*u + complex(math.Sqrt2, 0)*u + 1)
+		}
 		h *= cmplx.Rect(1, -w*s.delay) + complex(s.echo, 0)*cmplx.Rect(1, -w*(s.delay+s.echoDelay))
 		coef[i] *= h
 	}

@@ -276,10 +276,11 @@ func (a *analysed) fitAll(ctx context.Context) error {
 	for i := range a.groups {
 		a.groups[i].rise = firstRise(a.rig, a.groups[i].distance)
 	}
+	var first *fit.Analysis
+	var err error
 	for range rounds {
 		a.spectra(hz, clock)
-		first, err := fit.Guess(a.dataset(hz, clock), models(a.rig))
-		if err != nil {
+		if first, err = fit.Guess(a.dataset(hz, clock), models(a.rig), first); err != nil {
 			return err
 		}
 		if err := ctx.Err(); err != nil {
@@ -291,8 +292,7 @@ func (a *analysed) fitAll(ctx context.Context) error {
 		}
 	}
 	a.spectra(hz, clock)
-	var err error
-	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed)
+	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed, first)
 	return err
 }
 

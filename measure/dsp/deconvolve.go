@@ -132,7 +132,8 @@ func (d *Deconvolver) load(recording []float32) {
 func (d *Deconvolver) NoiseGain(f float64) float64 {
 	lo := int(f * math.Exp2(-1.0/24) / d.rate * float64(d.n))
 	hi := int(math.Ceil(f * math.Exp2(1.0/24) / d.rate * float64(d.n)))
-	lo, hi = max(lo, 1), min(hi, len(d.inverse)-1)
+	last := len(d.inverse) - 1
+	lo, hi = min(max(lo, 1), last), min(max(hi, 1), last)
 	var sum float64
 	for _, v := range d.inverse[lo : hi+1] {
 		sum += sqAbs(v)

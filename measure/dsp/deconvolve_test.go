@@ -210,6 +210,9 @@ func TestNoiseGain(t *testing.T) {
 		}
 		near(t, "density over prediction", density/(sigma*sigma*d.NoiseGain(f)), 1, 0.2)
 	}
+	for _, f := range []float64{-100, 0, 24000, 26000, 1e6} { // outside what there is: no gain, no panic
+		near(t, "gain outside the band", d.NoiseGain(f), 0, 1e-3*d.NoiseGain(1000))
+	}
 }
 
 func TestDeconvolverRefuses(t *testing.T) {

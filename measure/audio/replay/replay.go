@@ -1,16 +1,17 @@
-// Package replay is a recorder that hands out WAV files: what was recorded
-// elsewhere goes through the same chain as a sound card's takes.
+// Package replay is a recorder that makes no sound: it answers each request with
+// a WAV file. What was recorded elsewhere goes through the same chain as the
+// takes of a sound card.
 package replay
 
 import (
 	"context"
 	"errors"
 	"fmt"
-	"time"
+	"maps"
+	"os"
 
 	"standoff/measure"
 	"standoff/measure/audio"
-	"standoff/measure/wav"
 )
 
 // Key says which take a file is.
@@ -19,19 +20,24 @@ type Key struct {
 	Number   int    // from 1
 }
 
-// Recorder answers each request with the file of its distance and number. A file
-// that is shorter than the excitation is filled up with silence, a longer one
-// cut: the contract wants as many samples as were played. Load gives the whole.
+// Recorder answers each request with the file of its distance and number.
+//
+// The contract wants as many samples as were played: a longer file is cut, a
+// shorter one is filled up with zeros at its end. It wants full scale at most: a
+// float file that goes beyond is refused, since limiting it would distort what
+// was recorded cleanly. Load gives a whole file as it is.
 type Recorder struct {
+	rate          int
 	files         map[Key]string
 	mic, loopback int
 	closed        bool
 }
 
-// New makes a recorder over files; channels are counted from 1, loopback 0 means
-// that there is none.
-func New(files map[Key]string, mic, loopback int) *Recorder {
-	return &Recorder{files: files, mic: mic, loopback: loopback}
+// New makes a recorder of one sample rate in Hz over files. The microphone and
+// the loopback are channels of the files, counted from 1; loopback 0 means that
+// there is none. Files are opened when they are asked for.
+func New(sampleRate int, files map[Key]string, mic, loopback int) *Recorder {
+	return &Recorder{rate: sampleRate, files: maps.Clone(files), mic: mic, loopback: loopback}
 }
 
 // Name is "WAV files".
@@ -43,58 +49,80 @@ func (r *Recorder) Close() error {
 	return nil
 }
 
-// RateMismatchError says that a file does not have the sample rate asked for.
+// RateMismatchError says that a file was not recorded at the sample rate wanted.
 type RateMismatchError struct {
-	Path      string
-	Has, Want int // Hz
+	Path       string
+	File, Want int // Hz
 }
 
 func (e *RateMismatchError) Error() string {
-	return fmt.Sprintf("%s: recorded at %d Hz, asked for are %d Hz", e.Path, e.Has, e.Want)
+	return fmt.Sprintf("%s: recorded at %d Hz, but %d Hz are wanted", e.Path, e.File, e.Want)
 }
 
-// Record hands out the file for the request.
+// Record hands out the file for the request, and calls the meter once. It fails
+// where there is no such file, with *RateMismatchError where it has another
+// sample rate, and for everything that Load fails for. Started of the recording
+// is zero: a file does not say when its take began.
 func (r *Recorder) Record(ctx context.Context, req audio.Request) (*measure.Recording, error) {
-	switch {
-	case r.closed:
-		return nil, audio.ErrClosed
-	case len(req.Excitation) == 0:
-		return nil, errors.New("a take needs something to play")
-	case req.SampleRate <= 0:
-		return nil, errors.New("a take needs a sample rate")
-	}
-	if err := ctx.Err(); err != nil {
-		return nil, err
-	}
-	path, ok := r.files[Key{req.Distance.Label, req.Number}]
-	if !ok {
-		return nil, fmt.Errorf("no file for take %d at %s", req.Number, req.Distance.Label)
-	}
-	rec, err := Load(path, r.mic, r.loopback)
+	path, err := r.find(ctx, req)
 	if err != nil {
 		return nil, err
 	}
-	if rec.SampleRate != req.SampleRate {
-		return nil, &RateMismatchError{path, rec.SampleRate, req.SampleRate}
+	rec, err := load(ctx, path, r.mic, r.loopback)
+	if err != nil {
+		return nil, err
 	}
-	rec.Mic = fit(rec.Mic, len(req.Excitation))
-	if rec.Loopback != nil {
-		rec.Loopback = fit(rec.Loopback, len(req.Excitation))
+	if rec.SampleRate != r.rate {
+		return nil, &RateMismatchError{path, rec.SampleRate, r.rate}
+	}
+	if rec.Mic, err = fit(rec.Mic, len(req.Excitation)); err != nil {
+		return nil, fmt.Errorf("%s: microphone: %w", path, err)
+	}
+	if rec.Loopback, err = fit(rec.Loopback, len(req.Excitation)); err != nil {
+		return nil, fmt.Errorf("%s: loopback: %w", path, err)
 	}
 	if req.Meter != nil {
 		req.Meter(audio.Meter{Done: 1, Peak: peak(rec.Mic)})
 	}
-	return rec, ctx.Err()
+	return rec, nil
 }
 
-// fit cuts or fills up with silence, and keeps within full scale.
-func fit(x []float32, n int) []float32 {
+// find checks a request and says which file answers it.
+func (r *Recorder) find(ctx context.Context, req audio.Request) (string, error) {
+	switch {
+	case r.closed:
+		return "", audio.ErrClosed
+	case len(req.Excitation) == 0:
+		return "", errors.New("a take needs an excitation")
+	case req.SampleRate <= 0:
+		return "", errors.New("a take needs a sample rate")
+	case req.SampleRate != r.rate:
+		return "", fmt.Errorf("a take at %d Hz is asked for, but the files were opened for %d Hz", req.SampleRate, r.rate)
+	}
+	path, ok := r.files[Key{req.Distance.Label, req.Number}]
+	if !ok {
+		return "", fmt.Errorf("there is no file for take %d at %s", req.Number, req.Distance.Label)
+	}
+	// A pipe could keep Record waiting beyond the end of its context.
+	if info, err := os.Stat(path); err == nil && !info.Mode().IsRegular() {
+		return "", fmt.Errorf("%s: not a regular file", path)
+	}
+	return path, ctx.Err()
+}
+
+// fit brings a channel to n samples. No channel stays none.
+func fit(x []float32, n int) ([]float32, error) {
+	if x == nil {
+		return nil, nil
+	}
 	out := make([]float32, n)
 	copy(out, x)
 	for i, v := range out {
-		out[i] = min(max(v, -1), 1)
+		if v > 1 || v < -1 {
+			return nil, fmt.Errorf("sample %d is %v, beyond full scale; lower the level of the file", i, v)
+		}
 	}
-	return out
+	return out, nil
 }
 
 func peak(x []float32) float64 {
@@ -103,41 +131,4 @@ func peak(x []float32) float64 {
 		p = max(p, v, -v)
 	}
 	return float64(p)
-}
-
-// Load reads a whole file: the microphone from one channel and, unless it is 0,
-// the electrical loopback from another, both counted from 1. A file without the
-// channel, without samples, or with values that are no numbers is an error.
-func Load(path string, mic, loopback int) (*measure.Recording, error) {
-	f, err := wav.ReadFile(path)
-	if err != nil {
-		return nil, err
-	}
-	rec := &measure.Recording{SampleRate: f.SampleRate, Started: time.Time{}}
-	if rec.Mic, err = channel(f, mic); err != nil {
-		return nil, fmt.Errorf("%s: microphone: %w", path, err)
-	}
-	if loopback == 0 {
-		return rec, nil
-	}
-	if rec.Loopback, err = channel(f, loopback); err != nil {
-		return nil, fmt.Errorf("%s: loopback: %w", path, err)
-	}
-	return rec, nil
-}
-
-func channel(f *wav.File, n int) ([]float32, error) {
-	if n < 1 || n > f.Channels {
-		return nil, fmt.Errorf("channel %d is asked for, the file has %d", n, f.Channels)
-	}
-	x := f.Samples[n-1]
-	if len(x) == 0 {
-		return nil, errors.New("the file has no samples")
-	}
-	for i, v := range x {
-		if v-v != 0 {
-			return nil, fmt.Errorf("sample %d is no number", i)
-		}
-	}
-	return x, nil
 }
