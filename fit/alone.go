@@ -37,14 +37,14 @@ func (a *Analysis) alone(i int) Alone {
 	if !ok {
 		return nothing
 	}
-	out := Alone{PortSpacing: spacingValue(free.spacing, free.spacingSE, free.beta, free.betaSE, free.atBound)}
+	out := Alone{PortSpacing: spacingValue(free.spacing, math.Hypot(free.spacingSE, methodSpacing*free.spacing), free.beta, free.betaSE, free.atBound)}
 	if !out.PortSpacing.Resolved {
 		l.fixed = best.Acoustics.Spacing
 		if free, ok = l.solve(best.Acoustics); !ok {
 			return nothing
 		}
 	}
-	out.GradientFraction = mixValue(free.beta, free.betaSE)
+	out.GradientFraction = mixValue(free.beta, math.Hypot(free.betaSE, methodBeta))
 	return out
 }
 

@@ -41,6 +41,7 @@ func ChooseGate(responses []*ImpulseResponse, from, to float64) Gate {
 	for _, ir := range responses {
 		first = math.Min(first, firstReflection(ir, from, to))
 	}
+	first = math.Floor(first*1e4) / 1e4
 	length, reason := longestGate, "no reflection within 25 ms"
 	switch {
 	case first < shortestGate:

@@ -12,7 +12,9 @@ import (
 // above −32 dB, by no more than the 2 ms that its foot is wide; and after 25 ms
 // where there is none.
 func TestChooseGate(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
+	none := scene{gain: 0.3, delay: 100.5, noise: 1e-4, seed: 2}.take(a).Impulse
 	for _, p := range []struct {
 		name         string
 		level, delay float64 // of the reflection; s
@@ -28,7 +30,6 @@ func TestChooseGate(t *testing.T) {
 		{"late", 0.5, 0.040, 0.025, 0.025},
 	} {
 		ir := scene{gain: 0.3, delay: 250.5, noise: 1e-4, echo: p.level, echoDelay: p.delay * 48000, seed: 1}.take(a).Impulse
-		none := scene{gain: 0.3, delay: 100.5, noise: 1e-4, seed: 2}.take(a).Impulse
 		g := ChooseGate([]*ImpulseResponse{&none, &ir}, 40, 20000)
 		if g.Length < p.least || g.Length > p.most || g.Fall >= g.Length || g.Reason == "" {
 			t.Errorf("%s: a gate of %.2f ms, want %.2f to %.2f (%s)", p.name, 1e3*g.Length, 1e3*p.least, 1e3*p.most, g.Reason)

@@ -74,7 +74,7 @@ func (a *Analyser) dropout(mic []float32, full []float64, arrival float64) (at f
 			return float64(first) / float64(a.exc.Rate), true
 		}
 	}
-	return a.unexplained(full, begin, end, int(arrival))
+	return a.unexplained(mic, full, begin, end, int(arrival))
 }
 
 func (a *Analyser) loudAround(mic []float32, before, after int) bool {
@@ -96,7 +96,7 @@ func (a *Analyser) loudAround(mic []float32, before, after int) bool {
 // the frequencies that it splashes to. So what can be real is taken out of the
 // response (half a second from just before the direct sound, and a stretch for each
 // harmonic up to the fifth), and the excitation is played through the rest.
-func (a *Analyser) unexplained(full []float64, begin, end, arrival int) (at float64, found bool) {
+func (a *Analyser) unexplained(mic []float32, full []float64, begin, end, arrival int) (at float64, found bool) {
 	rate, l := float64(a.exc.Rate), a.exc.L
 	rest := append([]float64(nil), full...)
 	blank(rest, arrival-int(realBefore*rate), arrival+int(realAfter*rate))
@@ -107,7 +107,7 @@ func (a *Analyser) unexplained(full []float64, begin, end, arrival int) (at floa
 	}
 	// The sweep's ends lie outside the band and next to it.
 	from, to := begin+(end-begin)/5, end-(end-begin)/10
-	level, residual := a.blocks(a.dec.Forward(full), from, to), a.blocks(a.dec.Forward(rest), from, to)
+	level, residual := blocks(mic, a.exc.Rate, from, to), blocks(a.dec.Forward(rest), a.exc.Rate, from, to)
 	if len(residual) < 40 {
 		return 0, false
 	}
@@ -122,13 +122,13 @@ func (a *Analyser) unexplained(full []float64, begin, end, arrival int) (at floa
 }
 
 // blocks are the rms values of x in blocks of blockTime.
-func (a *Analyser) blocks(x []float64, from, to int) []float64 {
-	n := int(blockTime * float64(a.exc.Rate))
+func blocks[T float32 | float64](x []T, rate, from, to int) []float64 {
+	n := int(blockTime * float64(rate))
 	var out []float64
 	for ; from+n <= min(to, len(x)); from += n {
 		var sum float64
 		for _, v := range x[from : from+n] {
-			sum += v * v
+			sum += sq(float64(v))
 		}
 		out = append(out, math.Sqrt(sum/float64(n)))
 	}

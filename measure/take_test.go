@@ -10,6 +10,7 @@ import (
 // The direct sound is timed to a tenth of a sample wherever it falls between
 // samples, in noise of 40 dB below the sweep too.
 func TestArrivalBetweenSamples(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	for _, delay := range []float64{0, 100, 123.25, 200.5, 377.87, 1000.1, 9600.4} {
 		for _, noise := range []float64{0, 0.005} {
@@ -36,6 +37,7 @@ func TestLoopbackTakesLatencyOff(t *testing.T) {
 // A recorder that starts late loses part of the silence before the sweep, and the
 // arrival comes out negative; one that starts early puts more before it.
 func TestLateAndEarlyStart(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	mic := scene{gain: 0.4, delay: 50.3, noise: 1e-4}.record(a.exc)
 	for _, late := range []int{1, 49, 2000, 7000, 9000} {
@@ -56,6 +58,7 @@ func TestLateAndEarlyStart(t *testing.T) {
 // for its gate of 2 ms lead (half of it rising) and 18 ms (8 ms of it falling) that is
 // 14.375 ms·fs. The median over a log grid is that of the middle frequency.
 func TestSignalToNoise(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	for _, p := range []struct{ gain, noise float64 }{{0.5, 1e-3}, {0.1, 1e-3}, {0.5, 0.02}, {0.05, 1e-4}} {
 		got := scene{gain: p.gain, delay: 300, noise: p.noise, seed: 3}.take(a)
@@ -69,6 +72,7 @@ func TestSignalToNoise(t *testing.T) {
 }
 
 func TestTakeFlags(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	good := scene{gain: 0.4, delay: 300, noise: 1e-4, seed: 1}
 	take := func(mic []float32) *TakeAnalysis { return a.Take(&Recording{SampleRate: 48000, Mic: mic}) }
@@ -131,6 +135,7 @@ var losses = map[string]func(mic []float32, at, n int) []float32{
 // The sweep is of the default length: in a shorter one lost data hide more easily
 // among what a room may do.
 func TestDropouts(t *testing.T) {
+	t.Parallel()
 	sweep := testSweep
 	sweep.From, sweep.Duration = 20, 5
 	e, err := SweepExcitation(sweep, testLevel)
@@ -148,7 +153,9 @@ func TestDropouts(t *testing.T) {
 			for _, part := range []float64{0.35, 0.75} {
 				at := a.exc.Begin + int(part*float64(a.exc.End-a.exc.Begin))
 				got := a.Take(&Recording{SampleRate: 48000, Mic: lose(slices.Clone(clean), at, n)})
-				wantFlags(t, fmt.Sprintf("%d samples %s after %.0f %%", n, name, 100*part), got, Dropout)
+				if !slices.Contains(got.Flags, Dropout) {
+					t.Errorf("%d samples %s after %.0f %%: flags %v", n, name, 100*part, got.Flags)
+				}
 			}
 		}
 	}
@@ -156,6 +163,7 @@ func TestDropouts(t *testing.T) {
 
 // Zeros in place of sound are found however short the sweep and loud the noise.
 func TestZerosAreDropouts(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	for _, n := range []int{64, 500, 2048, 8000} {
 		mic := scene{gain: 0.4, delay: 300.3, noise: 0.01, second: 0.05, seed: 2}.record(a.exc)
@@ -166,6 +174,7 @@ func TestZerosAreDropouts(t *testing.T) {
 
 // Noise, distortion, hum, a room and the near-field rise are no dropouts.
 func TestNoFalseDropouts(t *testing.T) {
+	t.Parallel()
 	a := testAnalyser(t)
 	for name, s := range map[string]scene{
 		"clean":            {gain: 0.4, delay: 300.3},
@@ -179,7 +188,7 @@ func TestNoFalseDropouts(t *testing.T) {
 		"sixteen bits":     {gain: 0.003, delay: 300.3, noise: 1e-5},
 		"distorted, clean": {gain: 0.4, delay: 300.3, second: 0.02},
 	} {
-		for seed := range uint64(3) {
+		for seed := range uint64(2) {
 			s.seed = seed
 			mic := s.record(a.exc)
 			if name == "sixteen bits" {

@@ -5,6 +5,7 @@ import (
 
 	"standoff/configs"
 	"standoff/measure/rig"
+	"standoff/report/number"
 )
 
 type demoCmd struct {
@@ -44,9 +45,9 @@ func (e *env) truth(a *analysed) {
 	t := a.rig.Virtual.Capsule
 	c := a.result.Capsule
 	if v := c.GradientFraction; v.Resolved {
-		e.print("  truth         mix %.3f: off by %.3f", t.GradientFraction, math.Abs(*v.Value-t.GradientFraction))
+		e.print("  truth         mix %s: off by %s", number.Fixed(t.GradientFraction, 3), number.Fixed(math.Abs(*v.Value-t.GradientFraction), 4))
 	}
 	if v := c.PortSpacing; v.Resolved {
-		e.print("                port spacing %.1f mm: off by %.1f mm", 1e3*t.PortSpacing, 1e3*math.Abs(*v.Value-t.PortSpacing))
+		e.print("                port spacing %s mm: off by %s mm", number.Fixed(1e3*t.PortSpacing, 1), number.Fixed(1e3*math.Abs(*v.Value-t.PortSpacing), 2))
 	}
 }

@@ -1,27 +1,90 @@
 package main
 
-import "fmt"
+import (
+	"fmt"
+	"strings"
+
+	"standoff/fit"
+	"standoff/measure"
+	"standoff/report/number"
+)
 
 // summary prints what was found, for a person.
 func (e *env) summary(a *analysed) {
-	c := a.result.Capsule
-	show := func(v *float64, s float64) string {
-		if v == nil {
-			return "-"
+	r := a.result
+	c := r.Capsule
+	e.print("%s  %s", e.strong(a.folder.Manifest().Tag), headline(c))
+	e.print("  mix           %s", found(c.GradientFraction, 1, ""))
+	e.print("  port spacing  %s", found(c.PortSpacing, 1e3, "mm"))
+	if line := riseLine(r.RiseTable); line != "" && c.GradientFraction.Resolved {
+		e.print("  rise, 100 Hz  %s", line)
+	}
+	e.print("  fitted        %s on a %s body, %s to %s, gate %s, clock %s, polarity %s", c.Model, c.Body,
+		number.Frequency(r.Fit.From), number.Frequency(r.Fit.To), number.Time(r.Fit.Gate), r.Fit.Clock, r.Polarity)
+	e.print("  takes         %s", takesLine(r))
+	for _, w := range r.Warnings {
+		e.warn(w)
+	}
+	e.print("  report        %s", a.folder.Path("report.pdf"))
+}
+
+func headline(c fit.CapsuleResult) string {
+	out := c.Pattern
+	if out == "" {
+		out = "pattern not resolved"
+	}
+	if c.Claimed != "" {
+		out += ", claimed " + c.Claimed
+	}
+	return out
+}
+
+// found is a value with its ±, or that there is none.
+func found(v fit.Value, scale float64, unit string) string {
+	if v.Resolved && v.Value != nil && v.Expanded != nil {
+		return number.PlusMinus(*v.Value*scale, *v.Expanded*scale, unit) + "  (k = 2)"
+	}
+	out := "not resolved"
+	if v.UpperLimit != nil {
+		out += ", below " + strings.TrimSpace(number.Fixed(*v.UpperLimit*scale, number.Digits(*v.UpperLimit*scale*0.1))+" "+unit) + " (95 %, one-sided)"
+	}
+	return out
+}
+
+// riseLine is the rise at the distances that people ask for.
+func riseLine(t fit.RiseTable) string {
+	var out []string
+	for i, f := range t.Frequencies {
+		for j, r := range t.Distances {
+			if f == 100 && (r == 0.05 || r == 0.1 || r == 0.2) {
+				d := min(number.Digits(max(t.Expanded[i][j], 0.05)), 1)
+				out = append(out, fmt.Sprintf("%s ± %s dB at %s cm", number.Signed(t.DB[i][j], d), number.Fixed(max(t.Expanded[i][j], 0.1), d), number.Fixed(100*r, 0)))
+			}
 		}
-		return fmt.Sprintf("%.4f", *v*s)
 	}
-	e.print("%s %s %s pattern %s", a.rig.Unit.Tag, c.Model, c.Body, c.Pattern)
-	e.print("  mix %s ± %s", show(c.GradientFraction.Value, 1), show(c.GradientFraction.Expanded, 1))
-	e.print("  spacing %s ± %s mm", show(c.PortSpacing.Value, 1e3), show(c.PortSpacing.Expanded, 1e3))
-	e.print("  chi2 %.3f gate %.1f ms (%s) clock %s points %d band %.0f-%.0f", a.result.Fit.ReducedChiSquare, 1e3*a.result.Fit.Gate, a.result.Fit.GateReason, a.result.Fit.Clock, a.result.Fit.Points, a.result.Fit.From, a.result.Fit.To)
-	for _, m := range a.result.Models {
-		e.print("    %s/%s β %.4f d %.2f mm χ² %.1f Δ %.2f %s", m.Model, m.Body, m.GradientFraction, 1e3*m.PortSpacing, m.ChiSquare, m.Delta, m.Why)
+	return strings.Join(out, ", ")
+}
+
+func takesLine(r *fit.Result) string {
+	accepted := 0
+	for _, t := range r.Takes {
+		if t.Accepted {
+			accepted++
+		}
 	}
-	for _, d := range a.result.Distances {
-		e.print("    %s fitted %.2f ± %.2f mm misfit %.2f alone β %s d %s %v", d.Label, 1e3*d.Fitted, 1e3*d.FittedExpanded, d.Misfit, show(d.Alone.GradientFraction.Value, 1), show(d.Alone.PortSpacing.Value, 1e3), d.Flags)
+	places := 0
+	for _, d := range r.Distances {
+		if d.Used {
+			places++
+		}
 	}
-	for _, w := range a.result.Warnings {
-		e.print("  ! %s (%s)", w.Text, w.Hint)
+	return fmt.Sprintf("%d of %d accepted, %d of %d distances used", accepted, len(r.Takes), places, len(r.Distances))
+}
+
+// warn prints one thing that needs a look.
+func (e *env) warn(w measure.Warning) {
+	e.print("  ! %s", w.Text)
+	if w.Hint != "" {
+		e.print("    %s", w.Hint)
 	}
 }

@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 )
 
 // longestRIFF is the largest size that a RIFF header can give.
@@ -44,14 +45,17 @@ func (f *File) check() error {
 		if len(s) != len(f.Samples[0]) {
 			return errors.New("channels differ in length")
 		}
-		for i, v := range s {
-			if !f.Float && v != v {
-				return fmt.Errorf("sample %d of channel %d is not a number", i, c+1)
-			}
+		if f.Float {
+			continue
+		}
+		if i := slices.IndexFunc(s, isNaN); i >= 0 {
+			return fmt.Errorf("sample %d of channel %d is not a number", i, c+1)
 		}
 	}
 	return nil
 }
+
+func isNaN(v float32) bool { return v != v }
 
 // size is the number of bytes of the samples.
 func (f *File) size() int64 { return int64(len(f.Samples[0])) * int64(f.frame()) }

@@ -48,8 +48,7 @@ func sox(t testing.TB, in []byte, args ...string) []byte {
 }
 
 // noise is full-scale noise with the ends of the scale in it, as 32-bit integers
-// in interleaved order, of which the lowest 32−bits are zero. It never reaches
-// full scale upwards by rounding to float32.
+// in interleaved order, of which the lowest 32−bits bits are zero.
 func noise(frames, channels, bits int) []int32 {
 	rng := rand.New(rand.NewPCG(1, uint64(channels*100+bits)))
 	x := make([]int32, frames*channels)

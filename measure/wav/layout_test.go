@@ -211,14 +211,14 @@ func TestEncodeRefuses(t *testing.T) {
 	nan := float32(math.NaN())
 	one := [][]float32{{0}}
 	for want, f := range map[string]*File{
-		"a sample rate of 0 Hz":                {Format{0, 1, 16, false}, one},
-		"0 channels":                           {Format{48000, 0, 16, false}, nil},
-		"9 channels":                           {Format{48000, 9, 16, false}, make([][]float32, 9)},
-		"samples of 8 bits":                    {Format{48000, 1, 8, false}, one},
-		"float samples of 16 bits":             {Format{48000, 1, 16, true}, one},
-		"1 channels of samples":                {Format{48000, 2, 16, false}, one},
-		"channels differ in length":            {Format{48000, 2, 16, false}, [][]float32{{0}, {0, 0}}},
-		"sample 1 of channel 2 is not a numbe": {Format{48000, 2, 16, false}, [][]float32{{0, 0}, {0, nan}}},
+		"a sample rate of 0 Hz":                 {Format{0, 1, 16, false}, one},
+		"0 channels":                            {Format{48000, 0, 16, false}, nil},
+		"9 channels":                            {Format{48000, 9, 16, false}, make([][]float32, 9)},
+		"samples of 8 bits":                     {Format{48000, 1, 8, false}, one},
+		"float samples of 16 bits":              {Format{48000, 1, 16, true}, one},
+		"1 channels of samples":                 {Format{48000, 2, 16, false}, one},
+		"channels differ in length":             {Format{48000, 2, 16, false}, [][]float32{{0}, {0, 0}}},
+		"sample 1 of channel 2 is not a number": {Format{48000, 2, 16, false}, [][]float32{{0, 0}, {0, nan}}},
 	} {
 		var b bytes.Buffer
 		if err := Encode(&b, f); err == nil || !strings.Contains(err.Error(), want) || b.Len() > 0 {

@@ -1,0 +1,158 @@
+package report
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"standoff/fit"
+	"standoff/report/figure"
+	"standoff/report/number"
+)
+
+func patternPage(d *Data, s Style) page {
+	beta, expanded, known := mixOf(d)
+	answer := "The mix is not resolved, so no pattern can be said."
+	if known {
+		answer = fmt.Sprintf("The mix of %s makes it %s, on its axis and far from sources and walls. "+
+			"It is what the mix implies, not what a turntable would find.", value(d.Result.Capsule.GradientFraction, 1, ""), article(d.Result.Capsule.Pattern))
+	}
+	return page{"What pattern is it?", answer, func(doc *document) {
+		h := min(doc.width(), doc.room()-8*rowHeight-34)
+		doc.figure(figure.Polar{Style: s.Figure, Beta: beta, Expanded: expanded, Known: known}, h)
+		if known {
+			doc.heading("What follows from the mix")
+			doc.table([]column{{"", 1.3, left}, {"value", 1, left}, {"for comparison", 2.2, left}}, patternRows(beta, expanded))
+		}
+	}}
+}
+
+// patternRows are figures of the pattern with the ± that the mix leaves them.
+func patternRows(beta, expanded float64) [][]string {
+	clip := func(b float64) float64 { return math.Min(math.Max(b, 0), 1) }
+	of := func(f func(float64) float64, unit string) string {
+		half := math.Abs(f(clip(beta+expanded))-f(clip(beta-expanded))) / 2
+		return number.PlusMinus(f(beta), math.Max(half, 1e-3), unit)
+	}
+	level := func(angle float64) string {
+		v := math.Abs(fit.LevelAtAngle(beta, angle))
+		u := expanded * math.Abs(1-math.Cos(angle))
+		if v < 2*u {
+			return "below " + number.Fixed(20*math.Log10(math.Max(v+u, 1e-6)), 0) + " dB"
+		}
+		return number.PlusMinus(20*math.Log10(v), math.Max(20*math.Log10((v+u)/v), 0.03), "dB")
+	}
+	null := "none"
+	if a, ok := fit.NullAngle(beta); ok {
+		lo, _ := fit.NullAngle(clip(beta + expanded))
+		half := math.Max((a-lo)*180/math.Pi, 0.1)
+		null = number.PlusMinus(a*180/math.Pi, half, "°")
+	} else if _, ok := fit.NullAngle(clip(beta + expanded)); ok {
+		null = "none, or near 180°"
+	}
+	return [][]string{
+		{"level at 90°", level(math.Pi / 2), "cardioid −6 dB, figure-8 none"},
+		{"level at 180°", level(math.Pi), "cardioid none, hypercardioid −6 dB"},
+		{"null angle", null, "supercardioid 125°, hypercardioid 109°, figure-8 90°"},
+		{"directivity index", of(fit.DirectivityIndex, "dB"), "cardioid 4.8 dB, hypercardioid 6.0 dB"},
+		{"distance factor", of(fit.DistanceFactor, ""), "cardioid 1.7, hypercardioid 2.0"},
+		{"random-energy efficiency", of(fit.RandomEnergyEfficiency, ""), "omni 1, cardioid 0.33"},
+	}
+}
+
+func trustPage(d *Data, s Style) page {
+	return page{"Can these numbers be trusted?", trustAnswer(d), func(doc *document) {
+		r := d.Result
+		doc.heading("The joint fit")
+		doc.table([]column{{"", 1.3, left}, {"", 3, left}}, fitRows(r))
+		doc.heading("Models that were tried")
+		var rows [][]string
+		for _, m := range r.Models {
+			name := m.Model + ", " + m.Body
+			if m.Chosen {
+				name += " (chosen)"
+			}
+			rows = append(rows, []string{name, number.Fixed(m.GradientFraction, 4), number.Fixed(1000*m.PortSpacing, 2), misfit(m.ReducedChiSquare), m.Why})
+		}
+		doc.table([]column{{"model, body", 2, left}, {"mix", 0.8, decimal}, {"spacing, mm", 1, decimal}, {"misfit", 0.9, decimal}, {"", 3.2, left}}, rows)
+		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained.", 7.5, s.Figure.Soft)
+		doc.heading("Each distance by itself, given the far response that the others settle")
+		doc.table([]column{{"", 1, left}, {"mix", 1.5, decimal}, {"spacing, mm", 1.5, decimal}, {"misfit in the joint fit", 1.4, decimal}}, aloneRows(r))
+		doc.paragraph("A distance that disagrees with the others shows here. Far distances do not hold the spacing: that is as it should be.", 7.5, s.Figure.Soft)
+	}}
+}
+
+func trustAnswer(d *Data) string {
+	f := d.Result.Fit
+	return fmt.Sprintf("%s at %s, reduced chi-square %s with %s left unexplained beside the noise. %s",
+		plural(f.Points, "point", "points"), plural(used(d.Result), "distance", "distances"), misfit(f.ReducedChiSquare), number.Percent(f.Unexplained), followsSentence(d))
+}
+
+// misfit writes a reduced chi-square.
+func misfit(x float64) string {
+	switch {
+	case x >= 100:
+		return number.Fixed(x, 0)
+	case x >= 10:
+		return number.Fixed(x, 1)
+	}
+	return number.Fixed(x, 2)
+}
+
+func fitRows(r *fit.Result) [][]string {
+	c, f := r.Capsule, r.Fit
+	return [][]string{
+		{"mix", value(c.GradientFraction, 1, "")},
+		{"effective port spacing", value(c.PortSpacing, 1000, "mm")},
+		{"setback of the capsule", value(c.Setback, 1000, "mm") + ", by the rig and the fit together"},
+		{"radius of the source", value(c.SourceRadius, 1000, "mm") + ", likewise"},
+		{"speed of sound", number.PlusMinus(f.SpeedOfSound, f.SpeedExpanded, "m/s")},
+		{"model", c.Model + " on " + article(c.Body) + " body"},
+		{"band and gate", fmt.Sprintf("%s to %s; gate %s: %s", number.Frequency(f.From), number.Frequency(f.To), number.Time(f.Gate), orDash(f.GateReason))},
+		{"clock of play and record", f.Clock},
+		{"unexplained, besides noise", number.Percent(f.Unexplained) + " of each response; " + number.Fixed(f.Alike, 1) + " neighbouring frequencies count as one"},
+		{"the solver", f.Status},
+	}
+}
+
+func aloneRows(r *fit.Result) (rows [][]string) {
+	for _, d := range r.Distances {
+		if !d.Used {
+			rows = append(rows, []string{d.Label, "not used", "", ""})
+			continue
+		}
+		rows = append(rows, []string{d.Label, value(d.Alone.GradientFraction, 1, ""), strings.TrimSpace(value(d.Alone.PortSpacing, 1000, "")), misfit(d.Misfit)})
+	}
+	return rows
+}
+
+func takesPage(d *Data, s Style) page {
+	r := d.Result
+	answer := fmt.Sprintf("%s, %s accepted.", plural(len(r.Takes), "take", "takes"), number.Fixed(float64(acceptedTakes(r)), 0))
+	if acceptedTakes(r) == len(r.Takes) && len(r.Takes) > 0 {
+		answer = fmt.Sprintf("%s, all accepted.", plural(len(r.Takes), "take", "takes"))
+	}
+	answer += " What was recorded is kept as it was, rejected takes too."
+	return page{"What was recorded?", answer, func(doc *document) {
+		rows := make([][]string, 0, len(r.Takes))
+		for _, t := range r.Takes {
+			verdict := "accepted"
+			if !t.Accepted {
+				verdict = "rejected"
+			}
+			what := flagsText(t.Flags)
+			if t.Reason != "" {
+				what += ": " + t.Reason
+			}
+			rows = append(rows, []string{t.Distance, number.Fixed(float64(t.Number), 0), number.Fixed(t.PeakDB, 1), number.Fixed(t.SNRDB, 0), number.Fixed(1000*t.Arrival, 3), verdict, what})
+		}
+		keep := 5 * rowHeight
+		bottom := doc.style.Paper.Height
+		doc.style.Paper.Height -= keep
+		doc.table([]column{{"distance", 1, left}, {"take", 0.6, right}, {"peak, dBFS", 1, decimal}, {"over noise, dB", 1.25, right}, {"arrival, ms", 1.05, decimal}, {"", 0.9, left}, {"flags", 3.6, left}}, rows)
+		doc.style.Paper.Height = bottom
+		doc.heading("To repeat the analysis")
+		doc.paragraph("standoff fit DIR on the folder that holds this page: recordings, rig.yaml and session.json are in it. Session "+d.Session+
+			" is a hash of the rig and of every recording.", 8.5, s.Figure.Ink)
+	}}
+}

@@ -1,0 +1,15 @@
+package report
+
+// pages are all pages of a report in their order.
+func pages(d *Data, s Style) []page {
+	return []page{
+		summaryPage(d, s),
+		risePage(d, s),
+		responsesPage(d, s),
+		distancePage(d, s),
+		patternPage(d, s),
+		impulsePage(d, s),
+		trustPage(d, s),
+		takesPage(d, s),
+	}
+}
