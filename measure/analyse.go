@@ -55,6 +55,7 @@ type Quality struct {
 	SNR     float64 // median over the fit band of signal power over noise power in the response
 	Arrival float64 // of the direct sound after the start of the sweep, less the latency that a loopback shows, s
 	Level   float64 // rms magnitude of the direct response from 1 to 6 kHz
+	Clarity float64 // of the direct sound: its envelope over the median around it; some 3 for anything but a sweep
 	Second  float64 // second harmonic's level relative to the fundamental; NaN when not known
 }
 
@@ -68,14 +69,14 @@ func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
 		peak -= a.dec.Len() // it came before the excitation
 	}
 	ir := cutOut(full, rate, peak)
-	at := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
+	at, clarity := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
 	ir.Arrival = float64(ir.First) + at
 	ir.Noise = a.noise(rec.Mic, ir.Arrival)
 	if rec.Loopback != nil {
 		ir.Latency = a.latency(rec.Loopback)
 	}
 	out.Impulse = ir
-	out.Quality = Quality{Peak: peakOf(rec.Mic), Arrival: (ir.Arrival - ir.Latency) / rate, Second: a.second(full, peak)}
+	out.Quality = Quality{Peak: peakOf(rec.Mic), Arrival: (ir.Arrival - ir.Latency) / rate, Second: a.second(full, peak), Clarity: clarity}
 	out.Quality.SNR, out.Quality.Level = a.levels(&ir)
 	a.judge(out, rec, full)
 	return out
@@ -90,7 +91,8 @@ func (a *Analyser) latency(loopback []float32) float64 {
 	rate := float64(a.exc.Rate)
 	full := a.dec.Impulse(loopback)
 	ir := cutOut(full, rate, steepest(full))
-	return float64(ir.First) + directSound(ir.Samples, rate, a.exc.From, a.exc.To)
+	at, _ := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
+	return float64(ir.First) + at
 }
 
 func peakOf(x []float32) float64 {
@@ -110,8 +112,11 @@ func (a *Analyser) noise(mic []float32, arrival float64) Density {
 	for f := a.exc.Low; f < a.exc.High; f *= math.Exp2(1.0 / 6) {
 		d.Hz = append(d.Hz, f)
 	}
-	segment := min(len(quiet)/3, 8192)
-	power := dsp.PowerDensity(quiet, float64(a.exc.Rate), segment&^1, d.Hz)
+	segment := min(len(quiet)/3, 8192) &^ 1
+	for segment > 8 && dsp.FastLen(segment) != segment {
+		segment -= 2
+	}
+	power := dsp.PowerDensity(quiet, float64(a.exc.Rate), segment, d.Hz)
 	if power == nil {
 		return Density{}
 	}
@@ -171,23 +176,24 @@ func logGrid(from, to float64, n int) []float64 {
 	return out
 }
 
-// second is the second harmonic's peak relative to the fundamental's.
+// second is the second harmonic's level relative to the fundamental's: the square
+// root of their energies' ratio in 5 ms on both sides, since their phases differ by
+// 90° and peaks would not compare.
 func (a *Analyser) second(full []float64, peak int) float64 {
 	if a.exc.L == 0 {
 		return math.NaN()
 	}
 	lead := int(math.Round(a.exc.L * math.Ln2 * float64(a.exc.Rate)))
 	reach := a.exc.Rate / 200
-	main := peakAround(full, peak, reach)
-	return peakAround(full, peak-lead, reach) / math.Max(main, 1e-300)
+	main := energyAround(full, peak, reach)
+	return math.Sqrt(energyAround(full, peak-lead, reach) / math.Max(main, 1e-300))
 }
 
-func peakAround(x []float64, at, reach int) float64 {
-	var p float64
+func energyAround(x []float64, at, reach int) (sum float64) {
 	for i := at - reach; i <= at+reach; i++ {
-		p = math.Max(p, math.Abs(x[((i%len(x))+len(x))%len(x)]))
+		sum += sq(x[((i%len(x))+len(x))%len(x)])
 	}
-	return p
+	return sum
 }
 
 // Longest is the longest recording in samples that the Analyser can take.

@@ -65,8 +65,9 @@ func cutOut(full []float64, rate float64, peak int) ImpulseResponse {
 }
 
 // directSound finds the strongest arrival: the largest value of the envelope
-// between the frequencies of arrivalBand, as far as the excitation fills them.
-func directSound(x []float64, rate, from, to float64) float64 {
+// between the frequencies of arrivalBand, as far as the excitation fills them. How
+// far it stands over the median of the envelope is its clarity.
+func directSound(x []float64, rate, from, to float64) (at, clarity float64) {
 	lo, hi := arrivalLimits(from, to)
 	env := dsp.Envelope(x, rate, lo, hi)
 	best := 0
@@ -75,7 +76,7 @@ func directSound(x []float64, rate, from, to float64) float64 {
 			best = i
 		}
 	}
-	return dsp.PeakAt(env, best)
+	return dsp.PeakAt(env, best), env[best] / math.Max(Median(env), 1e-300)
 }
 
 // arrivalLimits is arrivalBand as far as an excitation from..to fills it.

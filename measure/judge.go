@@ -10,6 +10,7 @@ const (
 	clipLevel     = 0.9995 // of full scale
 	clipSamples   = 3      // that many at clipLevel are no accident
 	silentSNR     = 2.0    // power ratio below which nothing but noise arrived
+	leastClarity  = 6.0    // of the direct sound; hum and music have no arrival
 	lowSNR        = 100.0  // power ratio, 20 dB
 	flatRun       = 48     // equal samples in a row in the middle of a sweep
 	distortedBy   = 0.1    // second harmonic relative to the fundamental
@@ -30,7 +31,7 @@ func (a *Analyser) judge(t *TakeAnalysis, rec *Recording, full []float64) {
 	if n := rec.Overflows + rec.Underflows; n > 0 {
 		flag(Xrun, "the audio system lost data %d times: close other programs or use a larger buffer", n)
 	}
-	if t.Quality.SNR < silentSNR {
+	if t.Quality.SNR < silentSNR || t.Quality.Clarity < leastClarity {
 		flag(Silent, "nothing of the sweep arrived: look at cable, input, phantom power, pad and loudspeaker")
 		return
 	}
@@ -44,7 +45,7 @@ func (a *Analyser) judge(t *TakeAnalysis, rec *Recording, full []float64) {
 	if at, ok := a.dropout(rec.Mic, full, t.Impulse.Arrival); ok {
 		flag(Dropout, "samples are missing or wrong %.2f s after the start", at)
 	}
-	if t.Quality.Second > distortedBy {
+	if t.Quality.Second > distortedBy && t.Quality.SNR >= lowSNR {
 		flag(Distorted, "second harmonic at %.0f %%: turn the loudspeaker down", 100*t.Quality.Second)
 	}
 }
