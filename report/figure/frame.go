@@ -138,14 +138,17 @@ func (g grid) Plot(c draw.Canvas, p *plot.Plot) {
 	}
 }
 
-// span is the range of all finite values.
+// span is the range of all plausible values: no level, distance or time is beyond
+// absurd, and an axis that long would have no end of ticks.
 type span struct{ lo, hi float64 }
+
+const absurd = 1e5
 
 func newSpan() span { return span{math.Inf(1), math.Inf(-1)} }
 
 func (s *span) add(values ...float64) {
 	for _, v := range values {
-		if !math.IsNaN(v) && !math.IsInf(v, 0) {
+		if math.Abs(v) < absurd {
 			s.lo, s.hi = math.Min(s.lo, v), math.Max(s.hi, v)
 		}
 	}
