@@ -33,7 +33,7 @@ func TestReferencesRegenerate(t *testing.T) {
 	case testing.Short():
 		t.Skip("takes some seconds")
 	}
-	for _, topic := range []string{"dsp", "fit", "lsq"} {
+	for _, topic := range []string{"dsp", "fit", "lsq", "sphere"} {
 		t.Run(topic, func(t *testing.T) {
 			t.Parallel()
 			kept, fresh := filepath.Join("..", "testdata", "reference", topic), t.TempDir()

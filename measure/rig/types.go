@@ -113,7 +113,7 @@ type VirtualCapsule struct {
 	GradientFraction float64 // β
 	PortSpacing      float64 // plane-wave effective spacing d, m (3a for the sphere)
 	Setback          float64 // true grille to capsule centre, m
-	Sensitivity      float64 // gain at 1 kHz and 1 m, relative; negative reverses polarity
+	Sensitivity      float64 // gain of the far response at 30 mm, relative; negative reverses polarity
 	Resonance        float64 // Hz, 0 none
 	ResonanceQ       float64
 	HighPass         float64 // Hz, first order, 0 none

@@ -55,7 +55,7 @@ func (m *mapping) bits() int {
 
 func readVirtualCapsule(m *mapping) VirtualCapsule {
 	defer m.close()
-	return VirtualCapsule{
+	c := VirtualCapsule{
 		Form:             m.choice("form", "phase-shift", "phase-shift", "summed"),
 		Body:             m.choice("body", "sphere", "sphere", "open"),
 		Rear:             m.choice("rear", "delay", "delay", "low-pass"),
@@ -67,6 +67,11 @@ func readVirtualCapsule(m *mapping) VirtualCapsule {
 		ResonanceQ:       m.number("resonance_q", "0.7", "0.05", "100"),
 		HighPass:         m.quantityOr("high_pass", "none", frequency, "none", "0.1Hz", "20kHz"),
 	}
+	// The rear delay of a phase-shift capsule grows without bound for β → 0.
+	if key := "gradient_fraction"; c.Form == "phase-shift" && c.GradientFraction < 0.02 && m.sound(join(m.path, key)) {
+		m.fail(m.lineOf(key), join(m.path, key), "phase-shift makes no capsule with less than 0.02 of gradient", "write form: summed")
+	}
+	return c
 }
 
 // nonZero reads a gain; a gain of nought is what the fault dead is for.

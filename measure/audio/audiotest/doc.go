@@ -6,8 +6,8 @@
 //	}
 //
 // Each line of the contract is one check with a name of its own. A recorder
-// that cannot do what a check needs says so by an option; the check is then
-// skipped in the open, with the reason:
+// that cannot do what a check needs says so by an option; the check is then left
+// out in the open, with the reason in the log:
 //
 //	Instant      there is nothing to interrupt and no meter to watch (WAV files)
 //	RealTime     a take lasts as long as its excitation: deadlines are tried too

@@ -2,6 +2,10 @@ package bench
 
 import "math/cmplx"
 
+// entries are the pressures that a capsule senses, or their spectra's values in
+// one bin: at its front and rear port and at its centre.
+type entries struct{ front, rear, centre complex128 }
+
 // output is the capsule's output for the pressures at its entries.
 //
 //	phase-shift  the rear pressure goes through the network and both meet at the
@@ -12,23 +16,42 @@ import "math/cmplx"
 // with the network e^{−jωτ} (delay) or 1/(1+jωτ) (low-pass), cτ = d(1−β)/β. A
 // summed capsule on a solid body has no pressure at its centre; its pressure
 // element listens at both poles alike.
-func (c Capsule) output(k, speed float64, front, rear, centre complex128) complex128 {
+func (c Capsule) output(k float64, p entries) complex128 {
 	beta, d := c.GradientFraction, c.PortSpacing
 	if c.Form == Summed {
-		return complex(1-beta, 0)*centre + complex(beta, 0)*(front-rear)/complex(0, k*d)
+		if c.Body == Sphere {
+			p.centre = 0.5 * (p.front + p.rear)
+		}
+		return complex(1-beta, 0)*p.centre + complex(beta, 0)*(p.front-p.rear)/complex(0, k*d)
 	}
-	length := d * (1 - beta) / beta // c·τ
+	length := c.rearLength()
 	network := cmplx.Rect(1, -k*length)
 	if c.Rear == LowPass {
 		network = 1 / complex(1, k*length)
 	}
-	return (front - rear*network) / complex(0, k*(d+length))
+	return (p.front - p.rear*network) / complex(0, k*(d+length))
+}
+
+// rearLength is cτ of the rear network, m.
+func (c Capsule) rearLength() float64 {
+	return c.PortSpacing * (1 - c.GradientFraction) / c.GradientFraction
+}
+
+// hasCentre reports whether the pressure at the centre matters.
+func (c Capsule) hasCentre() bool { return c.Form == Summed && c.Body == Open }
+
+// radius of the body, of which d = 3a is the effective spacing, m; 0 when open.
+func (c Capsule) radius() float64 {
+	if c.Body == Sphere {
+		return c.PortSpacing / 3
+	}
+	return 0
 }
 
 // reach is how far the capsule reaches from its centre towards the source, m.
 func (c Capsule) reach() float64 {
 	if c.Body == Sphere {
-		return c.PortSpacing / 3
+		return c.radius()
 	}
 	return c.PortSpacing / 2
 }

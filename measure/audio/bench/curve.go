@@ -5,40 +5,70 @@ import (
 	"math/cmplx"
 )
 
-// curve is a slow complex function of frequency on a logarithmic grid, to be
-// read in between by cubic (Catmull–Rom) interpolation in log f.
-type curve struct {
-	from, perOctave float64
-	v               []complex128
+// grid is a row of frequencies for slow functions: equal steps in log f from 1 Hz
+// up to a turn, equal steps in f from there on, of the size that they have there.
+type grid struct {
+	perOctave float64
+	turn      float64 // Hz
+	octave    float64 // log2 of it
+	length    int     // points, with one before 1 Hz and two beyond the top
 }
 
-// Below curveFrom a curve keeps f·value, which tends to a constant for what
-// integrates.
-const curveFrom = 1.0
+// turnedBy is the phase in rad that a function may gain from point to point.
+const turnedBy = 0.3
 
-func newCurve(top float64, f func(float64) complex128) curve       { return sampled(top, 48, f) }
-func newCoarseCurve(top float64, f func(float64) complex128) curve { return sampled(top, 6, f) }
+// newGrid serves functions whose parts arrive within spread seconds.
+func newGrid(perOctave, spread, top float64) grid {
+	g := grid{perOctave: perOctave, turn: top}
+	if spread > 0 {
+		step := turnedBy / (2 * math.Pi * spread)
+		g.turn = math.Min(top, math.Max(1, step*perOctave/math.Ln2))
+	}
+	g.octave = math.Log2(g.turn)
+	g.length = int(g.position(top)) + 4
+	return g
+}
 
-func sampled(top, perOctave float64, f func(float64) complex128) curve {
-	n := int(math.Ceil(perOctave*math.Log2(top/curveFrom))) + 3
-	c := curve{from: curveFrom, perOctave: perOctave, v: make([]complex128, n)}
+// position of a frequency: 1 is the point at 1 Hz.
+func (g grid) position(f float64) float64 {
+	if f <= g.turn {
+		return 1 + g.perOctave*math.Log2(f)
+	}
+	return 1 + g.perOctave*(g.octave+(f/g.turn-1)/math.Ln2)
+}
+
+// frequency at a position, Hz.
+func (g grid) frequency(position float64) float64 {
+	octave := (position - 1) / g.perOctave
+	if octave <= g.octave {
+		return math.Exp2(octave)
+	}
+	return g.turn * (1 + (octave-g.octave)*math.Ln2)
+}
+
+// curve is a slow function of frequency on a grid, read by cubic (Catmull–Rom)
+// interpolation.
+type curve struct {
+	grid
+	v []complex128
+}
+
+func (g grid) sample(f func(float64) complex128) curve {
+	c := curve{g, make([]complex128, g.length)}
 	for i := range c.v {
-		// One point before and one after, for the interpolation.
-		c.v[i] = f(curveFrom * math.Exp2((float64(i)-1)/perOctave))
+		c.v[i] = f(g.frequency(float64(i)))
 	}
 	return c
 }
 
-// at is the curve's value at f.
-func (c curve) at(f float64) complex128 { return c.atOctave(math.Log2(f), f) }
-
-// atOctave is at, with the logarithm already taken.
-func (c curve) atOctave(octave, f float64) complex128 {
-	if f < c.from {
-		return c.v[1] * complex(c.from/f, 0)
+// at is the value at f ≥ 0. Below 1 Hz it goes on as spectra of real signals do,
+// with a level real part and an imaginary part in proportion to f.
+func (c curve) at(f float64) complex128 {
+	if f < 1 {
+		return complex(real(c.v[1]), imag(c.v[1])*f)
 	}
-	x := (octave-math.Log2(curveFrom))*c.perOctave + 1
-	i := min(max(int(x), 1), len(c.v)-3)
+	x := c.position(f)
+	i := min(int(x), len(c.v)-3)
 	t := x - float64(i)
 	// Weights of the cubic that passes through the two middle points with the
 	// slopes of their neighbours.
@@ -49,26 +79,21 @@ func (c curve) atOctave(octave, f float64) complex128 {
 		w0*imag(p[0])+w1*imag(p[1])+w2*imag(p[2])+w3*imag(p[3]))
 }
 
-// octaves are the logarithms of bins that are step Hz apart.
-func octaves(n int, step float64) []float64 {
-	out := make([]float64, n)
-	for i := 1; i < n; i++ {
-		out[i] = math.Log2(float64(i) * step)
+// delayed calls each with the bins 0, 1 … n−1, step Hz apart, and e^{−jω·delay}.
+func delayed(n int, step, delay float64, each func(bin int, turn complex128)) {
+	const afresh = 256 // bins, before rounding adds up
+	by := cmplx.Rect(1, -2*math.Pi*step*delay)
+	var turn complex128
+	for i := range n {
+		if i%afresh == 0 {
+			turn = cmplx.Rect(1, -2*math.Pi*step*delay*float64(i))
+		}
+		each(i, turn)
+		turn *= by
 	}
-	return out
 }
 
-// addTo adds the curve, delayed, to bins that are step Hz apart, with their
-// logarithms.
-func (c curve) addTo(h []complex128, octave []float64, step, delay float64) {
-	turn := cmplx.Rect(1, -2*math.Pi*step*delay)
-	var z complex128
-	for i := 1; i < len(h); i++ {
-		if i%256 == 1 {
-			z = cmplx.Rect(1, -2*math.Pi*step*delay*float64(i))
-		} else {
-			z *= turn
-		}
-		h[i] += c.atOctave(octave[i], float64(i)*step) * z
-	}
+// addTo adds the curve, later by delay seconds, to bins that are step Hz apart.
+func (c curve) addTo(bins []complex128, step, delay float64) {
+	delayed(len(bins), step, delay, func(i int, turn complex128) { bins[i] += c.at(float64(i)*step) * turn })
 }

@@ -16,16 +16,25 @@
 // The pressures are those of a source that gives e^{−jkR}/R far away, plus the
 // images of the room. Time factor e^{+jωt}, SI units, full scale ±1.
 //
+//	file            what it does                       source
+//	piston.go       loudspeaker as rings of monopoles  Kinsler et al., sec. 7.4
+//	sphere.go       series for a solid capsule         Duda & Martens 1998
+//	room.go         mirror images                      Allen & Berkley 1979
+//	field.go        pressures at the capsule's entries
+//	capsule.go      what the capsule makes of them
+//	electronics.go  hum, noise, converter, faults
+//
 // # Level
 //
 // A capsule of sensitivity 1 whose far response is flat brings the excitation
 // back at its own level when it is 30 mm from a point source, and at 0.03/r of
 // it at r metres. A sweep at −20 dBFS and a sensitivity of 0.5 then leave a
-// figure-8 at 30 mm some 5 dB below full scale in spite of its rise, and the
+// figure-8 at 30 mm some 7 dB below full scale in spite of its rise, and the
 // take at 600 mm 40 dB above a noise of −95 dBFS even before deconvolution.
 //
 // # What it leaves out
 //
-// Sound that goes to and fro between capsule and baffle; the directivity and the
-// directivity of the loudspeaker towards the walls; absorption in air.
+// Sound that goes to and fro between capsule and loudspeaker; the loudspeaker's
+// directivity towards the walls, and its cabinet; more than four reflections;
+// absorption in air.
 package bench

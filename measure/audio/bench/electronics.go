@@ -1,10 +1,6 @@
 package bench
 
-import (
-	"math"
-
-	"standoff/measure/audio"
-)
+import "math"
 
 // The harmonics of hum and their levels relative to the fundamental.
 var humHarmonics = []float64{1, 0.4, 0.3, 0.15, 0.1}
@@ -61,8 +57,8 @@ const (
 )
 
 // spoil lets go wrong what is to go wrong at the microphone.
-func (b *Bench) spoil(x []float64, req audio.Request) {
-	for _, f := range b.faults(req.Distance.Label, req.Number) {
+func (b *Bench) spoil(x []float64, label string, number int) {
+	for _, f := range b.faults(label, number) {
 		switch f.Kind {
 		case Clip:
 			scale(x, clipTo/math.Max(largest(x), 1e-300))
@@ -71,19 +67,22 @@ func (b *Bench) spoil(x []float64, req audio.Request) {
 		case Reversed:
 			scale(x, -1)
 		case Dead:
-			rng := b.random("dead", req.Distance.Label, req.Number)
+			rng := b.random("dead", label, number)
 			for i := range x {
 				x[i] = deadNoise * rng.NormFloat64()
 			}
 		}
 	}
-	b.loseSamples(x, req)
 }
 
-// loseSamples is a dropout: it hits all channels.
-func (b *Bench) loseSamples(x []float64, req audio.Request) {
-	for _, f := range b.faults(req.Distance.Label, req.Number) {
-		if f.Kind == Dropout {
+// loseSamples is a dropout: what is lost behind the converter is nought on all
+// channels.
+func (b *Bench) loseSamples(label string, number int, channels ...[]float32) {
+	for _, f := range b.faults(label, number) {
+		if f.Kind != Dropout {
+			continue
+		}
+		for _, x := range channels {
 			from := len(x) / 2
 			clear(x[from:min(from+lostFrames, len(x))])
 		}

@@ -12,31 +12,31 @@ type ring struct {
 	weight float64 // share of the source's volume velocity; they add up to 1
 }
 
-// rings cut a flat piston of the given radius in m into rings. A point on the
+// rings cut a flat piston of the given radius b in m into rings. A point on the
 // axis has the same distance to all monopoles of a ring, so that no angles are
 // needed. The nodes are those of Gauss–Legendre in the distance R to a point on
-// the axis at r, since there ρ dρ = R dR and the integrand has no root:
+// the axis at x, since there ρ dρ = R dR and the integrand has no root:
 //
-//	p(r) = (2/b²) ∫ e^{−jkR}/R · ρ dρ = Σ weight · e^{−jkR}/R
+//	p(x) = (2/b²) ∫ e^{−jkR}/R · ρ dρ = Σ weight · e^{−jkR}/R
 //
 // Source: the Rayleigh integral over a baffled circular piston (Kinsler, Frey,
 // Coppens & Sanders, Fundamentals of Acoustics, sec. 7.4).
-func rings(radius, r, kMax float64) []ring {
-	if radius == 0 {
+func rings(b, x, kMax float64) []ring {
+	const point = 1e-6 // m, too small to be cut
+	if b < point {
 		return []ring{{0, 1}}
 	}
-	edge := math.Hypot(r, radius)
-	// The phase over the piston turns by k(edge−r); eight nodes are enough for
-	// the amplitude and one for each radian is generous.
-	n := 8 + int(math.Ceil(kMax*(edge-r)))
+	// In R − x, which keeps its digits far away.
+	depth := b * b / (math.Hypot(x, b) + x)
+	// The phase over the piston turns by k·depth; a dozen nodes are enough for the
+	// amplitude and one for each radian is generous. In fours, because gonum's
+	// table for 26 nodes lacks its outermost weights.
+	n := 12 + 4*int(math.Ceil(kMax*depth/4))
 	nodes, weights := make([]float64, n), make([]float64, n)
-	quad.Legendre{}.FixedLocations(nodes, weights, r, edge)
+	quad.Legendre{}.FixedLocations(nodes, weights, 0, depth)
 	out := make([]ring, n)
-	for i, x := range nodes {
-		out[i] = ring{
-			radius: math.Sqrt((x - r) * (x + r)),
-			weight: 2 / (radius * radius) * x * weights[i],
-		}
+	for i, s := range nodes {
+		out[i] = ring{radius: math.Sqrt(s * (s + 2*x)), weight: 2 / (b * b) * (x + s) * weights[i]}
 	}
 	return out
 }

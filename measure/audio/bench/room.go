@@ -3,23 +3,27 @@ package bench
 import "math"
 
 // Where loudspeaker and microphone stand in the room: the loudspeaker at these
-// parts of length, width and height, the microphone before it along the length.
+// parts of length, width and height, the microphone before it along the length and
+// looking back at it.
 var standsAt = [3]float64{0.37, 0.46, 0.48}
 
-// clearance of the microphone from the wall before it, m.
+// clearance of the microphone from the wall behind it, m.
 const clearance = 0.3
 
 // image is a mirror image of the loudspeaker as the capsule's centre sees it.
 type image struct {
-	distance float64 // m
-	cos      float64 // of the angle from the capsule's axis; 1 is in front
+	along    float64 // m, before the capsule along its axis; behind it negative
+	aside    float64 // m, from the axis
 	strength float64 // of the pressure: the walls' reflection factors multiplied
 }
 
-// holds reports whether a microphone at r stands in the room.
-func (r *Room) holds(distance float64) bool {
-	return standsAt[0]*r.Size[0]+distance+clearance < r.Size[0]
-}
+func (im image) distance() float64 { return math.Hypot(im.along, im.aside) }
+
+// longest distance that has room, m.
+func (r *Room) longest() float64 { return (1-standsAt[0])*r.Size[0] - clearance }
+
+// holds reports whether a microphone at a distance stands in the room.
+func (r *Room) holds(distance float64) bool { return distance <= r.longest() }
 
 // imageOrder is the number of reflections that are followed; what comes later is
 // weaker by reflection^imageOrder and arrives when every gate has closed.
@@ -46,10 +50,12 @@ func (b *Bench) images(r float64) []image {
 				if order == 0 || order > imageOrder {
 					continue
 				}
-				dx, dy, dz := x.at-microphone[0], y.at-microphone[1], z.at-microphone[2]
-				distance := math.Sqrt(dx*dx + dy*dy + dz*dz)
-				// The capsule looks back along −x at the loudspeaker.
-				out = append(out, image{distance, -dx / distance, math.Pow(room.Reflection, float64(order))})
+				// The capsule looks along −x.
+				out = append(out, image{
+					along:    microphone[0] - x.at,
+					aside:    math.Hypot(y.at-microphone[1], z.at-microphone[2]),
+					strength: math.Pow(room.Reflection, float64(order)),
+				})
 			}
 		}
 	}

@@ -22,8 +22,7 @@ func BenchmarkTake(b *testing.B) {
 			req := audio.Request{Excitation: x, SampleRate: 48000, Distance: measure.Distance{Label: "30mm", Metres: 0.03}, Number: 1}
 			for b.Loop() {
 				if fresh {
-					clear(bench.paths)
-					bench.order = nil
+					bench.paths = paths{}
 				}
 				if _, err := bench.Record(context.Background(), req); err != nil {
 					b.Fatal(err)

@@ -3,6 +3,7 @@ package bench
 import (
 	"errors"
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 )
@@ -24,8 +25,8 @@ func (c Config) validate() error {
 	if c.Hum > 0 {
 		errs = append(errs, inRange("hum frequency", c.HumFrequency, 1, 1000))
 	}
-	for label, e := range c.TapeErrors {
-		errs = append(errs, inRange("tape error of "+label, e, -1, 1))
+	for _, label := range slices.Sorted(maps.Keys(c.TapeErrors)) {
+		errs = append(errs, inRange("tape error of "+label, c.TapeErrors[label], -1, 1))
 	}
 	for i, f := range c.Faults {
 		if err := f.validate(); err != nil {
@@ -34,6 +35,10 @@ func (c Config) validate() error {
 	}
 	return errors.Join(errs...)
 }
+
+// leastPhaseShift is the least gradient fraction β of a phase-shift capsule: its
+// rear path has the length d(1−β)/β, which then is 49 times the spacing.
+const leastPhaseShift = 0.02
 
 func (c Capsule) validate() error {
 	errs := []error{
@@ -48,6 +53,9 @@ func (c Capsule) validate() error {
 	}
 	if c.Form == PhaseShift {
 		errs = append(errs, oneOf("rear", c.Rear, Delay, LowPass))
+		if c.GradientFraction < leastPhaseShift {
+			errs = append(errs, fmt.Errorf("gradient fraction %g is below %g, where no rear path is long enough for a phase-shift capsule; use the form summed", c.GradientFraction, leastPhaseShift))
+		}
 	}
 	if c.Resonance > 0 {
 		errs = append(errs, inRange("quality factor of the resonance", c.ResonanceQ, 0.05, 100))

@@ -1,0 +1,6 @@
+//go:build !linux && cgo && !noaudio
+
+package portaudio
+
+// quiet has nothing to do here.
+func quiet() {}
