@@ -113,3 +113,12 @@ func configsDir(t *testing.T) string {
 	}
 	return dir
 }
+
+func readFile(t *testing.T, path string) string {
+	t.Helper()
+	raw, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return string(raw)
+}

@@ -169,7 +169,7 @@ func (d dimension) wrongUnit(text, number, name string) *complaint {
 	case name == "":
 		return &complaint{show(text) + " has no unit", hint}
 	case d.units[0].name == "" && name == "%":
-		return &complaint{show(text) + " is not a number without unit", "write it as a fraction: 50% is 0.5"}
+		return &complaint{show(text) + " is not a number without unit", "as a fraction: 50% is 0.5"}
 	case d.units[0].name == "":
 		return &complaint{show(text) + " is not a number without unit", "write " + number}
 	}
