@@ -1,10 +1,7 @@
 package main
 
 import (
-	"errors"
-	"fmt"
-	"io/fs"
-	"os"
+	"io"
 
 	"standoff/measure/rig"
 )
@@ -22,15 +19,11 @@ Example:
 }
 
 func (c *newCmd) Run(e *env) error {
-	f, err := os.OpenFile(c.File, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
-	if errors.Is(err, fs.ErrExist) {
-		return cure(fmt.Errorf("%s is already there and stays as it is", c.File), "give another name: standoff new FILE")
-	}
-	if err != nil {
+	err := createNew(c.File, func(w io.Writer) error {
+		_, err := w.Write(rig.Starter())
 		return err
-	}
-	_, err = f.Write(rig.Starter())
-	if err := errors.Join(err, f.Close()); err != nil {
+	})
+	if err != nil {
 		return err
 	}
 	e.print("%s written; set unit.tag, source.radius and distances, then: standoff run %s", c.File, c.File)

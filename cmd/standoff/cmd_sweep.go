@@ -3,13 +3,12 @@ package main
 import (
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"os"
 
 	"standoff/measure/rig"
 	"standoff/measure/wav"
-
-	"github.com/google/renameio/v2"
 )
 
 type sweepCmd struct {
@@ -34,19 +33,8 @@ func (c *sweepCmd) Run(e *env) error {
 	if err != nil {
 		return err
 	}
-	if err := refuseExisting(c.Out); err != nil {
-		return err
-	}
-	f, err := renameio.NewPendingFile(c.Out, renameio.WithPermissions(0o644))
-	if err != nil {
-		return err
-	}
-	defer f.Cleanup()
 	file := &wav.File{Format: wav.Format{SampleRate: exc.Rate, Channels: 1, Bits: 32, Float: true}, Samples: [][]float32{exc.Samples}}
-	if err := wav.Encode(f, file); err != nil {
-		return fmt.Errorf("%s: %w", c.Out, err)
-	}
-	if err := f.CloseAtomicallyReplace(); err != nil {
+	if err := createNew(c.Out, func(w io.Writer) error { return wav.Encode(w, file) }); err != nil {
 		return err
 	}
 	e.print("%s: %.2f s, %.0f Hz to %.0f Hz, %d Hz, peak %.1f dBFS", c.Out, float64(len(exc.Samples))/float64(exc.Rate),
@@ -55,14 +43,19 @@ func (c *sweepCmd) Run(e *env) error {
 	return nil
 }
 
-// refuseExisting keeps a file that is there: it might be a recording.
-func refuseExisting(path string) error {
-	_, err := os.Lstat(path)
-	switch {
-	case errors.Is(err, fs.ErrNotExist):
-		return nil
-	case err != nil:
+// createNew writes a file that must not be there yet: it might be a recording. One
+// that cannot be finished is taken away again.
+func createNew(path string, write func(io.Writer) error) error {
+	f, err := os.OpenFile(path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
+	if errors.Is(err, fs.ErrExist) {
+		return cure(fmt.Errorf("%s is already there and stays as it is", path), "give another name, or take it away first")
+	}
+	if err != nil {
 		return err
 	}
-	return cure(fmt.Errorf("%s is already there and stays as it is", path), "give another name, or take it away first")
+	if err := errors.Join(write(f), f.Sync(), f.Close()); err != nil {
+		os.Remove(path)
+		return fmt.Errorf("%s: %w", path, err)
+	}
+	return nil
 }
