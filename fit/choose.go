@@ -16,6 +16,7 @@ type Analysis struct {
 	Data       *Dataset
 	Candidates []*Joint
 	Claimed    string
+	lower      *Joint // the chosen model on the lower half of the band; nil where that is too little
 }
 
 // Best is the chosen candidate.
@@ -38,7 +39,13 @@ func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Ana
 	}
 	left := *a.Data
 	left.Unexplained = a.Best().unexplained()
-	return analyse(&left, models, claimed, a)
+	if a, err = analyse(&left, models, claimed, a); err != nil {
+		return nil, err
+	}
+	if half := left.below(left.Hz[len(left.Hz)-1] / 2); len(half.Hz) >= 6 {
+		a.lower, _ = fitModel(half, a.Best().Model, a.Best())
+	}
+	return a, nil
 }
 
 // Guess is Analyse without its refinements: for a first look at the rise.
@@ -184,6 +191,9 @@ func preference(m Model) int {
 	if m.Body != Sphere {
 		p += 2
 	}
+	if m.Rear == LowPass {
+		p += 4
+	}
 	return p
 }
 
@@ -221,11 +231,25 @@ func (a *Analysis) formUncertainty(of func(*Joint) float64) float64 {
 	return widest / math.Sqrt(3)
 }
 
+// bandUncertainty is the standard uncertainty of a quantity from the choice of the
+// band: by how much the lower half of the band disagrees with the whole, beyond
+// what it is less certain by. A model that holds gives next to nothing; one that
+// holds nowhere quite gives another answer in every band.
+func (a *Analysis) bandUncertainty(of func(*Joint) (value, se float64)) float64 {
+	if a.lower == nil || !a.lower.Status.Good() {
+		return 0
+	}
+	whole, se := of(a.Best())
+	part, wider := of(a.lower)
+	excess := (part-whole)*(part-whole) - math.Max(wider*wider-se*se, 0)
+	return math.Sqrt(math.Max(excess, 0) / 3)
+}
+
 func (a *Analysis) candidates() []Candidate {
 	out := make([]Candidate, len(a.Candidates))
 	for i, j := range a.Candidates {
 		out[i] = Candidate{
-			Model: j.Model.Form, Body: j.Model.Body, GradientFraction: j.Acoustics.Beta, PortSpacing: j.Acoustics.Spacing,
+			Model: j.Model.Form, Body: j.Model.Body, Rear: j.Model.rear(), GradientFraction: j.Acoustics.Beta, PortSpacing: j.Acoustics.Spacing,
 			ChiSquare: j.ChiSquare, ReducedChiSquare: j.ReducedChiSquare(), Delta: math.Min(a.delta(j), 1e6),
 			Chosen: i == 0, Why: a.why(i),
 		}

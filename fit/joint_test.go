@@ -39,7 +39,7 @@ func world(m Model, a Acoustics, seed uint64) *Dataset {
 }
 
 func TestJointRecoversItsWorld(t *testing.T) {
-	for _, m := range []Model{{Summed, Open, PistonSource}, {PhaseShift, Open, PistonSource}, {Summed, Sphere, PistonSource}, {PhaseShift, Sphere, PistonSource}} {
+	for _, m := range []Model{{Form: Summed, Body: Open, Source: PistonSource}, {Form: PhaseShift, Body: Open, Source: PistonSource}, {Form: Summed, Body: Sphere, Source: PistonSource}, {Form: PhaseShift, Body: Sphere, Source: PistonSource}} {
 		for _, beta := range []float64{0.3, 0.5, 0.75, 1} {
 			truth := Acoustics{Beta: beta, Spacing: 0.025}
 			j, err := FitModel(world(m, truth, 3), m)

@@ -11,6 +11,7 @@ type Model struct {
 	Form   string // Summed, PhaseShift
 	Body   string // Open, Sphere
 	Source string // PointSource, PistonSource
+	Rear   string // of a phase-shift capsule: Delay ("" is that), LowPass
 }
 
 // The forms, bodies and sources.
@@ -20,16 +21,39 @@ const (
 	Open         = "open"        // two ports in free air
 	Sphere       = "sphere"      // two ports at the poles of a rigid sphere
 	PointSource  = "point"
-	PistonSource = "piston" // baffled, circular, moving as one
+	PistonSource = "piston"   // baffled, circular, moving as one
+	Delay        = "delay"    // the way to the diaphragm's back delays
+	LowPass      = "low-pass" // it is a first-order low-pass, of the same delay at low frequency
 )
 
-func (m Model) String() string { return m.Form + " on a " + m.Body + " body" }
+func (m Model) String() string {
+	body := " on a " + m.Body + " body"
+	if m.Body == Open {
+		body = " on an open body"
+	}
+	if m.Form == PhaseShift && m.Rear == LowPass {
+		return m.Form + " with a low-pass" + body
+	}
+	return m.Form + body
+}
+
+// rear names the rear network, "" for a form that has none.
+func (m Model) rear() string {
+	switch {
+	case m.Form != PhaseShift:
+		return ""
+	case m.Rear == "":
+		return Delay
+	}
+	return m.Rear
+}
 
 func (m Model) validate() error {
 	ok := (m.Form == Summed || m.Form == PhaseShift) && (m.Body == Open || m.Body == Sphere) &&
-		(m.Source == PointSource || m.Source == PistonSource)
+		(m.Source == PointSource || m.Source == PistonSource) &&
+		(m.Rear == "" || m.Form == PhaseShift && (m.Rear == Delay || m.Rear == LowPass))
 	if !ok {
-		return fmt.Errorf("no such model: form %q, body %q, source %q", m.Form, m.Body, m.Source)
+		return fmt.Errorf("no such model: form %q, body %q, source %q, rear %q", m.Form, m.Body, m.Source, m.Rear)
 	}
 	return nil
 }
@@ -49,6 +73,8 @@ type Acoustics struct {
 //
 //	summed       (1−β)·p₀ + β·(p₁ − p₂)/(jkd)
 //	phase-shift  (p₁ − p₂·e^{−jωτ}) / (jω(d/c + τ)),  τ = (d/c)(1−β)/β
+//
+// A rear network that is a low-pass has 1/(1+jωτ) in place of e^{−jωτ}.
 //
 // The open body has its entries at r ∓ d/2 and p₀ at r. The sphere of radius
 // a = d/3 has them at its poles; since a pressure element in such a body cannot
@@ -79,7 +105,11 @@ func (m Model) mix(a Acoustics, k float64, front, rear, centre complex128) compl
 		return complex(1-a.Beta, 0)*centre + complex(a.Beta, 0)*(front-rear)/complex(0, k*a.Spacing)
 	}
 	delay := a.Spacing * (1 - a.Beta) / a.Beta // c·τ
-	return (front - rear*cmplx.Rect(1, -k*delay)) / complex(0, k*(a.Spacing+delay))
+	network := cmplx.Rect(1, -k*delay)
+	if m.Rear == LowPass {
+		network = 1 / complex(1, k*delay)
+	}
+	return (front - rear*network) / complex(0, k*(a.Spacing+delay))
 }
 
 // Rise is the output at r relative to that for a far source which makes the

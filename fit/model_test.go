@@ -18,7 +18,7 @@ func TestTwoPortVectors(t *testing.T) {
 		{17.2462, 1.9762, 11.2170, .5529, 6.0345, .1429, 1.7027, .0231},
 		{15.2364, 1.3984, 9.3525, .3727, 4.5867, .0949, 1.1354, .0153},
 	}
-	m := Model{PhaseShift, Open, PointSource}
+	m := Model{Form: PhaseShift, Body: Open, Source: PointSource}
 	for i, row := range want {
 		a := Acoustics{Beta: 1 / (1 + q[i]), Spacing: 0.02, Speed: 343}
 		for n, w := range row {
@@ -37,7 +37,7 @@ func TestRiseOfASmallCapsule(t *testing.T) {
 		{1, 0.05, 50, 26.793}, {1, 0.05, 100, 20.799}, {1, 0.1, 100, 14.886}, {1, 0.2, 100, 9.269}, {1, 0.3, 100, 6.346},
 		{1, 0.5, 1000, 0.051}, {0.5, 0.05, 100, 14.886}, {0.5, 0.2, 100, 4.568}, {0.75, 0.1, 100, 12.495}, {0.3, 0.2, 100, 2.229},
 	} {
-		for _, m := range []Model{{Summed, Open, PointSource}, {PhaseShift, Open, PointSource}} {
+		for _, m := range []Model{{Form: Summed, Body: Open, Source: PointSource}, {Form: PhaseShift, Body: Open, Source: PointSource}} {
 			got := decibels(cmplx.Abs(m.Rise(Acoustics{Beta: p.beta, Spacing: 1e-4, Speed: 343}, p.r, p.f)))
 			if math.Abs(got-p.dB) > 1e-3 {
 				t.Errorf("%v, β %g, %g m, %g Hz: %.4f dB, want %.3f", m, p.beta, p.r, p.f, got, p.dB)
@@ -49,7 +49,7 @@ func TestRiseOfASmallCapsule(t *testing.T) {
 // A pressure microphone shows no rise at any distance (common practice).
 func TestNoRiseWithoutGradient(t *testing.T) {
 	for _, r := range []float64{0.02, 0.1, 1} {
-		m := Model{Summed, Open, PistonSource}
+		m := Model{Form: Summed, Body: Open, Source: PistonSource}
 		if got := cmplx.Abs(m.Rise(Acoustics{Spacing: 0.02, Radius: 0.017, Speed: 343}, r, 50)); math.Abs(got-1) > 1e-12 {
 			t.Errorf("at %g m the rise is %g", r, got)
 		}
@@ -59,7 +59,7 @@ func TestNoRiseWithoutGradient(t *testing.T) {
 // Before it is equalised a gradient element rises by 6 dB an octave far away,
 // and is level near the source at low frequency (common practice).
 func TestSlopesOfTheRawGradient(t *testing.T) {
-	m := Model{Summed, Open, PointSource}
+	m := Model{Form: Summed, Body: Open, Source: PointSource}
 	a := Acoustics{Beta: 1, Spacing: 0.005, Speed: 343}
 	raw := func(r, f float64) float64 { return decibels(cmplx.Abs(m.Output(a, r, f)) * 2 * math.Pi * f) }
 	if slope := raw(10, 1000) - raw(10, 500); math.Abs(slope-6.02) > 0.02 {
@@ -113,7 +113,7 @@ func TestRingsAddUpToThePiston(t *testing.T) {
 // Every form tends to 1·e^{−jkr}/r far away at low frequency, and Far is the
 // limit of Output·r·e^{jkr}.
 func TestFarForms(t *testing.T) {
-	for _, m := range []Model{{Summed, Open, PointSource}, {PhaseShift, Open, PointSource}, {Summed, Sphere, PointSource}, {PhaseShift, Sphere, PointSource}} {
+	for _, m := range []Model{{Form: Summed, Body: Open, Source: PointSource}, {Form: PhaseShift, Body: Open, Source: PointSource}, {Form: Summed, Body: Sphere, Source: PointSource}, {Form: PhaseShift, Body: Sphere, Source: PointSource}} {
 		a := Acoustics{Beta: 0.4, Spacing: 0.027, Speed: 343}
 		if got := m.Far(a, 5); cmplx.Abs(got-1) > 5e-3 {
 			t.Errorf("%v at 5 Hz: %v", m, got)
@@ -136,10 +136,10 @@ func TestSphereSeesLessCurvature(t *testing.T) {
 		return cmplx.Abs(out) * k * 3 * a
 	}
 	excess := func(m Model) float64 { return (difference(m) - 3*a/(r*r)) * r * r * r * r / (a * a * a) }
-	if got := excess(Model{Summed, Sphere, PointSource}); math.Abs(got-3.5) > 0.1 {
+	if got := excess(Model{Form: Summed, Body: Sphere, Source: PointSource}); math.Abs(got-3.5) > 0.1 {
 		t.Errorf("sphere: %.3f, want 3.5", got)
 	}
-	if got := excess(Model{Summed, Open, PointSource}); math.Abs(got-6.75) > 0.1 {
+	if got := excess(Model{Form: Summed, Body: Open, Source: PointSource}); math.Abs(got-6.75) > 0.1 {
 		t.Errorf("open: %.3f, want 6.75", got)
 	}
 }

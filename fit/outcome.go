@@ -50,7 +50,7 @@ func (a *Analysis) capsule() CapsuleResult {
 	betaU := a.betaUncertainty()
 	spacingU := a.spacingUncertainty()
 	c := CapsuleResult{
-		Model: best.Model.Form, Body: best.Model.Body, Claimed: a.Claimed,
+		Model: best.Model.Form, Body: best.Model.Body, Rear: best.Model.rear(), Claimed: a.Claimed,
 		GradientFraction: mixValue(ac.Beta, betaU),
 		PortSpacing:      spacingValue(ac.Spacing, spacingU, ac.Beta, betaU, best.SpacingAtBound),
 		Setback:          resolved(best.Setback, best.SetbackSE, "m"),
@@ -83,12 +83,23 @@ const (
 
 func (a *Analysis) betaUncertainty() float64 {
 	form := a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Beta })
-	return math.Hypot(math.Hypot(a.Best().BetaSE, form), methodBeta)
+	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return j.Acoustics.Beta, j.BetaSE })
+	return root(a.Best().BetaSE, form, band, methodBeta)
 }
 
 func (a *Analysis) spacingUncertainty() float64 {
 	form := a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Spacing })
-	return math.Hypot(math.Hypot(a.Best().SpacingSE, form), methodSpacing*a.Best().Acoustics.Spacing)
+	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return j.Acoustics.Spacing, j.SpacingSE })
+	return root(a.Best().SpacingSE, form, band, methodSpacing*a.Best().Acoustics.Spacing)
+}
+
+// root is the root of the sum of squares.
+func root(parts ...float64) float64 {
+	var sum float64
+	for _, p := range parts {
+		sum += p * p
+	}
+	return math.Sqrt(sum)
 }
 
 // agreesWith reports whether some mix within the interval is nearest to the

@@ -16,9 +16,9 @@ func TestUncertaintiesAreHonest(t *testing.T) {
 		model Model
 		truth Acoustics
 	}{
-		{Model{PhaseShift, Open, PistonSource}, Acoustics{Beta: 0.5, Spacing: 0.025}},
-		{Model{Summed, Open, PistonSource}, Acoustics{Beta: 0.4, Spacing: 0.030}},
-		{Model{PhaseShift, Sphere, PistonSource}, Acoustics{Beta: 0.6, Spacing: 0.027}},
+		{Model{Form: PhaseShift, Body: Open, Source: PistonSource}, Acoustics{Beta: 0.5, Spacing: 0.025}},
+		{Model{Form: Summed, Body: Open, Source: PistonSource}, Acoustics{Beta: 0.4, Spacing: 0.030}},
+		{Model{Form: PhaseShift, Body: Sphere, Source: PistonSource}, Acoustics{Beta: 0.6, Spacing: 0.027}},
 	} {
 		t.Run(w.model.String(), func(t *testing.T) {
 			t.Parallel()

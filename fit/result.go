@@ -34,8 +34,9 @@ type Result struct {
 
 // CapsuleResult is what was found about the capsule.
 type CapsuleResult struct {
-	Model            string `json:"model"` // summed, phase-shift
-	Body             string `json:"body"`  // open, sphere
+	Model            string `json:"model"`          // summed, phase-shift
+	Body             string `json:"body"`           // open, sphere
+	Rear             string `json:"rear,omitempty"` // of phase-shift: delay, low-pass
 	GradientFraction Value  `json:"gradient_fraction"`
 	PortSpacing      Value  `json:"port_spacing"` // plane-wave effective, m
 	Setback          Value  `json:"setback"`      // m, as fitted with its prior
@@ -98,6 +99,7 @@ type FitSummary struct {
 type Candidate struct {
 	Model            string  `json:"model"`
 	Body             string  `json:"body"`
+	Rear             string  `json:"rear,omitempty"`
 	GradientFraction float64 `json:"gradient_fraction"`
 	PortSpacing      float64 `json:"port_spacing_m"`
 	ChiSquare        float64 `json:"chi_square"`

@@ -54,7 +54,7 @@ func readSolved(t testing.TB) (names []string, sets map[string]*solved) {
 		names = append(names, row[0])
 		tapes[row[0]] = v[7]
 		sets[row[0]] = &solved{
-			model: Model{row[1], row[2], row[3]}, chi: v[8], freedom: int(v[9]), cost: v[10],
+			model: Model{Form: row[1], Body: row[2], Source: row[3]}, chi: v[8], freedom: int(v[9]), cost: v[10],
 			data: &Dataset{FreeClock: v[0] != 0, Setback: v[1], SetbackUncertainty: v[2],
 				Radius: v[3], RadiusUncertainty: v[4], Speed: v[5], SpeedUncertainty: v[6]},
 			value: map[string]float64{}, standardErrors: map[string]float64{},

@@ -48,7 +48,8 @@ func (a *Analysis) predictedRise(r, f float64) (dB, u float64) {
 	variance := byBeta*byBeta*c[0][0] + bySpacing*bySpacing*c[1][1] + 2*byBeta*bySpacing*c[0][1] +
 		bySetback*bySetback*best.SetbackSE*best.SetbackSE +
 		byBeta*byBeta*methodBeta*methodBeta
-	return dB, math.Hypot(math.Sqrt(math.Max(variance, 0)), a.formUncertainty(value))
+	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return value(j), math.Abs(byBeta) * j.BetaSE })
+	return dB, root(math.Sqrt(math.Max(variance, 0)), a.formUncertainty(value), band)
 }
 
 func pointRise(m Model, ac Acoustics, r, f float64) float64 {

@@ -69,12 +69,15 @@ func trustPage(d *Data, s Style) page {
 		var rows [][]string
 		for _, m := range r.Models {
 			name := m.Model + ", " + m.Body
+			if m.Rear == fit.LowPass {
+				name += ", " + m.Rear
+			}
 			if m.Chosen {
 				name += " (chosen)"
 			}
 			rows = append(rows, []string{name, number.Fixed(m.GradientFraction, 4), number.Fixed(1000*m.PortSpacing, 2), misfit(m.ReducedChiSquare), m.Why})
 		}
-		doc.table([]column{{"model, body", 2, left}, {"mix", 0.8, decimal}, {"spacing, mm", 1, decimal}, {"misfit", 0.9, decimal}, {"", 3.2, left}}, rows)
+		doc.table([]column{{"model, body, rear", 2.5, left}, {"mix", 0.8, decimal}, {"spacing, mm", 1, decimal}, {"misfit", 0.9, decimal}, {"", 2.9, left}}, rows)
 		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained.", 7.5, s.Figure.Soft)
 		doc.heading("Each distance by itself, given the far response that the others settle")
 		doc.table([]column{{"", 1, left}, {"mix", 1.5, decimal}, {"spacing, mm", 1.5, decimal}, {"misfit in the joint fit", 1.4, decimal}}, aloneRows(r))
@@ -107,7 +110,7 @@ func fitRows(r *fit.Result) [][]string {
 		{"setback of the capsule", value(c.Setback, 1000, "mm") + ", by the rig and the fit together"},
 		{"radius of the source", value(c.SourceRadius, 1000, "mm") + ", likewise"},
 		{"speed of sound", number.PlusMinus(f.SpeedOfSound, f.SpeedExpanded, "m/s")},
-		{"model", c.Model + " on " + article(c.Body) + " body"},
+		{"model", build(c)},
 		{"band and gate", fmt.Sprintf("%s to %s; gate %s: %s", number.Frequency(f.From), number.Frequency(f.To), number.Time(f.Gate), orDash(f.GateReason))},
 		{"clock of play and record", f.Clock},
 		{"unexplained, besides noise", number.Percent(f.Unexplained) + " of each response; " + number.Fixed(f.Alike, 1) + " neighbouring frequencies count as one"},

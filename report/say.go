@@ -46,6 +46,15 @@ func article(word string) string {
 	return "a " + word
 }
 
+// build says what kind of capsule a model is.
+func build(c fit.CapsuleResult) string {
+	rear := ""
+	if c.Rear == fit.LowPass {
+		rear = " with a low-pass"
+	}
+	return c.Model + rear + " on " + article(c.Body) + " body"
+}
+
 // riseAt looks the table up for a distance and a frequency, exactly.
 func riseAt(t fit.RiseTable, metres, hz float64) (dB, expanded float64, ok bool) {
 	for i, f := range t.Frequencies {

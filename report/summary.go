@@ -121,7 +121,7 @@ func (d *document) headline() {
 
 func spacingFoot(c fit.CapsuleResult) string {
 	if c.PortSpacing.Resolved {
-		return c.Model + " on " + article(c.Body) + " body"
+		return build(c)
 	}
 	if l := limits(c.PortSpacing, 1000, "mm"); l != "" {
 		return strings.Trim(l, " ()")

@@ -394,6 +394,9 @@ func models(r *rig.Rig) []fit.Model {
 	for _, form := range forms {
 		for _, body := range bodies {
 			out = append(out, fit.Model{Form: form, Body: body, Source: r.Source.Kind})
+			if form == fit.PhaseShift {
+				out = append(out, fit.Model{Form: form, Body: body, Source: r.Source.Kind, Rear: fit.LowPass})
+			}
 		}
 	}
 	return out

@@ -12,7 +12,6 @@ import (
 	"path/filepath"
 	"runtime"
 	"strings"
-	"syscall"
 	"testing"
 	"time"
 
@@ -126,12 +125,34 @@ func peakOfProgram(b *testing.B, dir, into string) float64 {
 		b.Fatalf("%v\n%s", err, out)
 	}
 	cmd := exec.Command(bin, "-q", "fit", into)
-	if err := cmd.Run(); err != nil {
+	if err := cmd.Start(); err != nil {
 		b.Fatal(err)
 	}
-	usage, ok := cmd.ProcessState.SysUsage().(*syscall.Rusage)
-	if !ok {
-		return 0
+	done := make(chan error, 1)
+	go func() { done <- cmd.Wait() }()
+	// What the kernel says of an ended child counts the parent before exec; its
+	// high-water mark while it runs does not.
+	var peak float64
+	for {
+		select {
+		case err := <-done:
+			if err != nil {
+				b.Fatal(err)
+			}
+			return peak
+		case <-time.After(5 * time.Millisecond):
+			peak = max(peak, highWater(cmd.Process.Pid))
+		}
 	}
-	return float64(usage.Maxrss) / 1024
+}
+
+// highWater is the most memory a process has had, MB.
+func highWater(pid int) (mb float64) {
+	raw, _ := os.ReadFile(fmt.Sprintf("/proc/%d/status", pid))
+	for _, line := range strings.Split(string(raw), "\n") {
+		if rest, ok := strings.CutPrefix(line, "VmHWM:"); ok {
+			fmt.Sscan(rest, &mb)
+		}
+	}
+	return mb / 1024
 }

@@ -19,7 +19,7 @@ func (e *env) summary(a *analysed) {
 	if line := riseLine(r.RiseTable); line != "" && c.GradientFraction.Resolved {
 		e.print("  rise, 100 Hz  %s", line)
 	}
-	e.print("  fitted        %s on a %s body, %s to %s, gate %s, clock %s, polarity %s", c.Model, c.Body,
+	e.print("  fitted        %s, %s to %s, gate %s, clock %s, polarity %s", a.fit.Best().Model,
 		number.Frequency(r.Fit.From), number.Frequency(r.Fit.To), number.Time(r.Fit.Gate), r.Fit.Clock, r.Polarity)
 	e.print("  takes         %s", takesLine(r))
 	for _, w := range r.Warnings {

@@ -92,23 +92,20 @@ func (d *Deconvolver) frequency(i int) float64 { return float64(i) * d.rate / fl
 func (d *Deconvolver) Impulse(recording []float32) []float64 {
 	d.load(recording)
 	d.fft.Coefficients(d.coef, d.buf)
-	for i := range d.coef {
-		d.coef[i] *= d.inverse[i]
-	}
-	out := d.fft.Sequence(nil, d.coef)
-	scale := 1 / float64(d.n)
-	for i := range out {
-		out[i] *= scale
-	}
-	return out
+	return d.times(d.inverse)
 }
 
 // Forward returns the excitation as a response of Len samples passes it on: the
 // circular convolution of both.
 func (d *Deconvolver) Forward(response []float64) []float64 {
 	d.fft.Coefficients(d.coef, response)
-	for i := range d.coef {
-		d.coef[i] *= d.forward[i]
+	return d.times(d.forward)
+}
+
+// times multiplies what was transformed by a spectrum and goes back to time.
+func (d *Deconvolver) times(spectrum []complex128) []float64 {
+	for i, v := range spectrum {
+		d.coef[i] *= v
 	}
 	out := d.fft.Sequence(nil, d.coef)
 	scale := 1 / float64(d.n)

@@ -1,7 +1,7 @@
 """The main chain in numpy and scipy, to hold the program's time and memory against.
 
 The same steps on the same files: deconvolve every take, find the direct sound,
-make the response compact by its rise, gate, transform, average; fit four forms by
+make the response compact by its rise, gate, transform, average; fit six forms by
 variable projection, twice for the gate and twice for what is left unexplained; fit
 each distance alone. It does not judge takes and draws nothing.
 
@@ -9,7 +9,6 @@ usage: chain.py SESSION SWEEP.wav   prints one line of JSON
 """
 import json
 import re
-import resource
 import sys
 import time
 from pathlib import Path
@@ -111,7 +110,8 @@ def mix(form, k, beta, d, front, rear, centre):
     if form[0] == "summed":
         return (1 - beta) * centre + beta * (front - rear) / (1j * k * d)
     tau = d * (1 - beta) / beta
-    return (front - rear * np.exp(-1j * k * tau)) / (1j * k * (d + tau))
+    network = 1 / (1 + 1j * k * tau) if form[2] == "low-pass" else np.exp(-1j * k * tau)
+    return (front - rear * network) / (1j * k * (d + tau))
 
 
 def output(form, k, r, beta, d, b):
@@ -177,7 +177,14 @@ class Joint:
         return hi
 
 
-FORMS = [("phase-shift", "sphere"), ("phase-shift", "open"), ("summed", "sphere"), ("summed", "open")]
+FORMS = [
+    ("phase-shift", "sphere", "delay"),
+    ("phase-shift", "sphere", "low-pass"),
+    ("phase-shift", "open", "delay"),
+    ("phase-shift", "open", "low-pass"),
+    ("summed", "sphere", ""),
+    ("summed", "open", ""),
+]
 
 
 def fit_all(hz, nominal, y, variance, unexplained, speed, before=None):
@@ -284,7 +291,7 @@ def main():
     print(json.dumps({
         "mix": best.result.x[0], "spacing_m": best.result.x[1], "form": best.form,
         "seconds": time.perf_counter() - begun,
-        "peak_mb": resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024,
+        "peak_mb": int(re.search(r"VmHWM:\s+(\d+)", Path("/proc/self/status").read_text())[1]) / 1024,
     }))
 
 
