@@ -17,6 +17,7 @@ type RiseCurve struct {
 	Corner   float64 // Hz, where the fitted rise is 3 dB; 0 when it lies outside the line
 
 	LineHz, LineDB []float64 // fitted, fine grid
+	LineExpanded   []float64 // ± of LineDB
 	Hz             []float64 // third-octave or finer points inside the fit band
 	DB, Expanded   []float64 // measured rise and its ±
 	Residual       []float64 // measured − fitted, dB

@@ -48,6 +48,7 @@ func (a *Analysis) riseCurve(i int) RiseCurve {
 		}
 		out.LineHz = append(out.LineHz, f)
 		out.LineDB = append(out.LineDB, decibels(cmplx.Abs(m.Rise(ac, r, f))))
+		out.LineExpanded = append(out.LineExpanded, Coverage*a.lineUncertainty(r, f, best.DistanceSE[i]))
 	}
 	out.Corner = crossing(out.LineHz, out.LineDB, cornerDB)
 	for j, f := range a.Data.Hz {
@@ -62,6 +63,26 @@ func (a *Analysis) riseCurve(i int) RiseCurve {
 		out.Residual = append(out.Residual, db-decibels(cmplx.Abs(m.Rise(ac, r, f))))
 	}
 	return out
+}
+
+// lineUncertainty is the standard uncertainty in dB of the fitted rise at a fitted
+// distance, from mix and spacing, which together hold what is in doubt about the
+// model, and from the distance.
+func (a *Analysis) lineUncertainty(r, f, place float64) float64 {
+	best := a.Best()
+	rise := func(dBeta, dSpacing, dr float64) float64 {
+		ac := best.Acoustics
+		ac.Beta, ac.Spacing = ac.Beta+dBeta, math.Max(ac.Spacing+dSpacing, smallestSpacing)
+		return decibels(cmplx.Abs(best.Model.Rise(ac, r+dr, f)))
+	}
+	const step = 1e-5
+	here := rise(0, 0, 0)
+	byBeta, bySpacing, byPlace := (rise(step, 0, 0)-here)/step, (rise(0, step, 0)-here)/step, (rise(0, 0, step)-here)/step
+	u := byBeta * a.betaUncertainty()
+	if best.SpacingSE > 0 {
+		u = math.Hypot(u, bySpacing*best.SpacingSE)
+	}
+	return math.Hypot(u, byPlace*place)
 }
 
 // measured is the level of point i at frequency j relative to the far response

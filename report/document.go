@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"image/color"
 	"io"
+	"slices"
 	"strings"
 	"time"
 	"unicode"
@@ -204,7 +205,7 @@ func (d *document) paragraph(s string, size float64, c color.Color) {
 func (d *document) wrap(s string, width float64) []string {
 	var lines []string
 	line := ""
-	for _, word := range strings.Fields(s) {
+	for _, word := range glued(strings.Fields(s)) {
 		for d.pdf.GetStringWidth(word) > width {
 			head := d.fitted(word, width)
 			cut := strings.TrimSuffix(head, "…")
@@ -244,3 +245,19 @@ func (d *document) figureAt(f figure.Figure, x, width, height float64) {
 	c := newCanvas(d.pdf, x, d.y+height)
 	f.Draw(draw.Canvas{Canvas: c, Rectangle: vg.Rectangle{Max: vg.Point{X: vg.Length(width), Y: vg.Length(height)}}})
 }
+
+// glued keeps a number and its unit on one line.
+func glued(words []string) []string {
+	var out []string
+	for i, w := range words {
+		bare := strings.TrimRight(w, ".,;:")
+		if i > 0 && (slices.Contains(units, bare) || w == "±" || words[i-1] == "±") {
+			out[len(out)-1] += " " + w
+			continue
+		}
+		out = append(out, w)
+	}
+	return out
+}
+
+var units = []string{"%", "mm", "cm", "m", "ms", "s", "Hz", "kHz", "dB", "dBFS", "°C", "kPa", "m/s"}

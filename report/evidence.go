@@ -17,7 +17,7 @@ func risePage(d *Data, s Style) page {
 }
 
 // riseAnswer names the rise at 100 Hz, as fitted, for the nearest, a middle and the
-// farthest distance, with the ± of the nearest measured point.
+// farthest distance.
 func riseAnswer(d *Data) string {
 	curves := riseCurves(d)
 	var parts []string
@@ -26,7 +26,7 @@ func riseAnswer(d *Data) string {
 			continue
 		}
 		if v, ok := valueAt(c.LineHz, c.LineDB, 100); ok {
-			parts = append(parts, decibelsPlusMinus(v, expandedNear(c, 100))+" at "+c.Label)
+			parts = append(parts, decibelsPlusMinus(v, lineExpanded(c, 100))+" at "+c.Label)
 		}
 	}
 	if len(parts) == 0 {
@@ -66,14 +66,9 @@ func valueAt(hz, db []float64, f float64) (float64, bool) {
 	return 0, false
 }
 
-// expandedNear is the ± of the measured point nearest to f.
-func expandedNear(c fit.RiseCurve, f float64) float64 {
-	best, u := math.Inf(1), 0.0
-	for i, h := range c.Hz {
-		if d := math.Abs(math.Log(h / f)); d < best && i < len(c.Expanded) {
-			best, u = d, c.Expanded[i]
-		}
-	}
+// lineExpanded is the ± of the fitted line at f.
+func lineExpanded(c fit.RiseCurve, f float64) float64 {
+	u, _ := valueAt(c.LineHz, c.LineExpanded, f)
 	return u
 }
 

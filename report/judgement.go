@@ -3,9 +3,11 @@ package report
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"standoff/fit"
+	"standoff/measure"
 	"standoff/report/figure"
 	"standoff/report/number"
 )
@@ -143,19 +145,39 @@ func takesPage(d *Data, s Style) page {
 			if !t.Accepted {
 				verdict = "rejected"
 			}
-			what := flagsText(t.Flags)
-			if t.Reason != "" {
-				what += ": " + t.Reason
+			over, arrival := number.Fixed(t.SNRDB, 0), number.Fixed(1000*t.Arrival, 3)
+			if slices.Contains(t.Flags, measure.Silent) {
+				over, arrival = "–", "–"
 			}
-			rows = append(rows, []string{t.Distance, number.Fixed(float64(t.Number), 0), number.Fixed(t.PeakDB, 1), number.Fixed(t.SNRDB, 0), number.Fixed(1000*t.Arrival, 3), verdict, what})
+			rows = append(rows, []string{t.Distance, number.Fixed(float64(t.Number), 0), number.Fixed(t.PeakDB, 1), over, arrival, verdict, flagsText(t.Flags)})
 		}
-		keep := 5 * rowHeight
+		keep := (5 + float64(min(3*(len(r.Takes)-acceptedTakes(r)), 14))) * rowHeight
 		bottom := doc.style.Paper.Height
 		doc.style.Paper.Height -= keep
-		doc.table([]column{{"distance", 1, left}, {"take", 0.6, right}, {"peak, dBFS", 1, decimal}, {"over noise, dB", 1.25, right}, {"arrival, ms", 1.05, decimal}, {"", 0.9, left}, {"flags", 3.6, left}}, rows)
+		doc.table([]column{{"distance", 1, left}, {"take", 0.6, right}, {"peak, dBFS", 1, decimal}, {"over noise, dB", 1.25, right}, {"arrival, ms", 1.05, decimal}, {"", 0.9, left}, {"flags", 2.6, left}}, rows)
 		doc.style.Paper.Height = bottom
+		doc.rejected()
 		doc.heading("To repeat the analysis")
 		doc.paragraph("standoff fit DIR on the folder that holds this page: recordings, rig.yaml and session.json are in it. Session "+d.Session+
 			" is a hash of the rig and of every recording.", 8.5, s.Figure.Ink)
 	}}
+}
+
+// rejected says why takes were rejected, as far as there is room.
+func (d *document) rejected() {
+	r := d.data.Result
+	if acceptedTakes(r) == len(r.Takes) {
+		return
+	}
+	d.heading("Rejected, and why")
+	for _, t := range r.Takes {
+		if t.Accepted {
+			continue
+		}
+		if d.room() < 6*rowHeight {
+			d.paragraph("… and more in result.json", 8, d.style.Figure.Soft)
+			return
+		}
+		d.paragraph(sentence(fmt.Sprintf("%s, take %d: %s", t.Distance, t.Number, t.Reason)), 8, d.style.Figure.Ink)
+	}
 }

@@ -53,6 +53,7 @@ func addDistance(d *Data, label string, r float64) {
 	for f := 20.0; f < 20000; f *= 1.03 {
 		rise := 10 * math.Log10(1+math.Pow(0.5*344/(2*math.Pi*f*r), 2))
 		curve.LineHz, curve.LineDB = append(curve.LineHz, f), append(curve.LineDB, rise)
+		curve.LineExpanded = append(curve.LineExpanded, 0.1)
 		response.Hz, response.DB = append(response.Hz, f), append(response.DB, rise-20*math.Log10(r))
 		response.Degrees, response.Expanded = append(response.Degrees, 0), append(response.Expanded, 0.2)
 	}

@@ -100,3 +100,11 @@ func flagsText[F ~string](flags []F) string {
 	}
 	return strings.Join(out, ", ")
 }
+
+// sentence ends with a full stop, or as it ends already.
+func sentence(s string) string {
+	if strings.HasSuffix(s, "?") || strings.HasSuffix(s, ".") {
+		return s
+	}
+	return s + "."
+}

@@ -77,7 +77,7 @@ func (d *document) warnings() {
 		if text = strings.TrimSpace(text); w.Hint != "" {
 			text += ": " + w.Hint
 		}
-		d.paragraph("▪ "+text+".", 8.5, d.style.Figure.Accent)
+		d.paragraph("▪ "+sentence(text), 8.5, d.style.Figure.Accent)
 	}
 	if len(list) > 0 {
 		d.y += 6

@@ -211,7 +211,7 @@ func (a *analysed) judge() error {
 	for _, h := range a.takes {
 		q := h.analysis.Quality
 		v := session.Verdict{Accepted: h.accepted, Flags: h.flags, Reason: joinReasons(h.reasons),
-			Quality: session.Quality{PeakDBFS: dB(q.Peak), SNRDB: dB(math.Sqrt(q.SNR)), ArrivalS: q.Arrival}}
+			Quality: session.Quality{PeakDBFS: dB(q.Peak), SNRDB: snrDB(q), ArrivalS: q.Arrival}}
 		if err := a.folder.Judge(h.take.File, v); err != nil {
 			return err
 		}

@@ -2,7 +2,9 @@ package main
 
 import (
 	"fmt"
+	"math"
 	"slices"
+	"strconv"
 	"strings"
 
 	"standoff/fit"
@@ -19,11 +21,12 @@ func (a *analysed) complete(version string) {
 		q := h.analysis.Quality
 		r.Takes = append(r.Takes, fit.TakeResult{
 			File: h.take.File, Distance: h.take.Distance, Number: h.take.Number, Accepted: h.accepted,
-			Flags: orEmpty(h.flags), PeakDB: dB(q.Peak), SNRDB: dB(q.SNR) / 2, Arrival: q.Arrival, Reason: joinReasons(h.reasons),
+			Flags: orEmpty(h.flags), PeakDB: dB(q.Peak), SNRDB: snrDB(q), Arrival: q.Arrival, Reason: joinReasons(h.reasons),
 		})
 	}
 	r.Distances = a.allDistances(r.Distances)
-	r.Warnings = append(a.takeWarnings(), r.Warnings...)
+	r.Warnings = append(r.Warnings, a.placeWarnings()...)
+	r.Warnings = append(r.Warnings, a.takeWarnings()...)
 	a.result = r
 }
 
@@ -71,20 +74,53 @@ func (a *analysed) flagsAt(label string, used bool) []measure.Flag {
 	return out
 }
 
-// takeWarnings name what was rejected and what is missing.
+// snrDB is the signal over the noise in dB, 0 where there is no signal.
+func snrDB(q measure.Quality) float64 { return dB(math.Sqrt(math.Max(q.SNR, 1))) }
+
+// takeWarnings name what was rejected, takes of a distance with the same flaw
+// together.
 func (a *analysed) takeWarnings() []measure.Warning {
 	out := []measure.Warning{}
+	said := map[string]bool{}
 	for _, h := range a.takes {
-		if !h.accepted {
-			out = append(out, measure.Warning{Code: "take-rejected", Text: fmt.Sprintf("%s is left out: %s", h.take.File, joinReasons(h.reasons))})
+		key := h.distance.Label + " " + flagWords(h.flags)
+		if h.accepted || said[key] {
+			continue
 		}
+		said[key] = true
+		var numbers []string
+		for _, o := range a.takes {
+			if !o.accepted && o.distance.Label+" "+flagWords(o.flags) == key {
+				numbers = append(numbers, strconv.Itoa(o.take.Number))
+			}
+		}
+		word, verb := "take", "is"
+		if len(numbers) > 1 {
+			word, verb = "takes", "are"
+		}
+		out = append(out, measure.Warning{Code: "take-rejected", Text: fmt.Sprintf("%s %s at %s %s left out: %s",
+			word, strings.Join(numbers, ", "), h.distance.Label, verb, joinReasons(h.reasons))})
 	}
+	return out
+}
+
+func flagWords(flags []measure.Flag) string {
+	var out []string
+	for _, f := range flags {
+		out = append(out, string(f))
+	}
+	return strings.Join(out, ", ")
+}
+
+// placeWarnings name distances without a take that can be used.
+func (a *analysed) placeWarnings() []measure.Warning {
+	out := []measure.Warning{}
 	for _, d := range a.rig.Distances {
 		if !slices.ContainsFunc(a.takes, func(h heard) bool { return h.distance.Label == d.Label }) {
 			out = append(out, measure.Warning{Code: "distance-missing", Text: d.Label + " has not been measured",
 				Hint: "run again on the same folder: it goes on where it stopped"})
 		} else if !slices.ContainsFunc(a.groups, func(g group) bool { return g.distance.Label == d.Label }) {
-			out = append(out, measure.Warning{Code: "distance-left-out", Text: d.Label + " has no take that can be used"})
+			out = append(out, measure.Warning{Code: "distance-left-out", Text: d.Label + " has no take that can be used", Hint: "put right what the takes say, and run again on the same folder"})
 		}
 	}
 	return out

@@ -11,6 +11,7 @@ import (
 	"standoff/measure"
 	"standoff/measure/audio"
 	"standoff/measure/session"
+	"standoff/report/number"
 )
 
 // tries is how often a bad take is made anew before the next distance's turn.
@@ -135,9 +136,9 @@ func (t *taker) judge(where string, take session.Take, rec *measure.Recording) (
 	} else if len(a.Reasons) > 0 {
 		verdict = "kept, but " + joinReasons(a.Reasons)
 	}
-	t.e.say("%s: %s (peak %.1f dBFS, %.0f dB over the noise)", where, verdict, dB(a.Quality.Peak), dB(math.Sqrt(a.Quality.SNR)))
+	t.e.say("%s: %s (peak %s dBFS, %s dB over the noise)", where, verdict, number.Fixed(dB(a.Quality.Peak), 1), number.Fixed(snrDB(a.Quality), 0))
 	return ok, t.f.Judge(take.File, session.Verdict{Accepted: ok, Flags: a.Flags, Reason: joinReasons(a.Reasons),
-		Quality: session.Quality{PeakDBFS: dB(a.Quality.Peak), SNRDB: dB(math.Sqrt(a.Quality.SNR)), ArrivalS: a.Quality.Arrival}})
+		Quality: session.Quality{PeakDBFS: dB(a.Quality.Peak), SNRDB: snrDB(a.Quality), ArrivalS: a.Quality.Arrival}})
 }
 
 // bar shows how much of something is done.

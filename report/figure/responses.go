@@ -2,6 +2,7 @@ package figure
 
 import (
 	"gonum.org/v1/plot"
+	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 )
 
@@ -20,7 +21,10 @@ type Responses struct {
 }
 
 // Draw draws it.
-func (r Responses) Draw(c draw.Canvas) { r.plot().Draw(c) }
+func (r Responses) Draw(c draw.Canvas) {
+	// Names stand behind the ends of the lines.
+	r.plot().Draw(draw.Crop(c, 0, -vg.Points(34), 0, 0))
+}
 
 func (r Responses) plot() *plot.Plot {
 	s := r.Style
@@ -47,7 +51,7 @@ func (r Responses) plot() *plot.Plot {
 	if span.hi-span.lo > 90 {
 		span.lo = span.hi - 90
 	}
-	levelAxis(p, span.lo, span.hi)
+	levelAxis(p, span.lo-0.04*(span.hi-span.lo), span.hi)
 	p.Add(labels{s, names, false})
 	return p
 }
