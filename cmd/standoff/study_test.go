@@ -143,7 +143,11 @@ func TestWorlds(t *testing.T) {
 		if s.named < n {
 			t.Errorf("%s: named right %d times of %d", w.name, s.named, n)
 		}
-		t.Logf("| %s | %.4f | %.2f | %.2f mm | %.2f | %d of %d | %d of %d |", w.name, rms(s.mix), rms(s.mixPull), 1e3*rms(s.gap), rms(s.gapPull), s.unresolved, n, s.named, n)
+		gap, pull := "", ""
+		if len(s.gap) > 0 {
+			gap, pull = fmt.Sprintf("%.2f mm", 1e3*rms(s.gap)), fmt.Sprintf("%.2f", rms(s.gapPull))
+		}
+		t.Logf("| %s | %.4f | %.2f | %s | %s | %d of %d | %d of %d |", w.name, rms(s.mix), rms(s.mixPull), gap, pull, s.unresolved, n, s.named, n)
 	}
 }
 
