@@ -29,7 +29,7 @@ func DistanceFactor(beta float64) float64 { return 1 / math.Sqrt(RandomEnergyEff
 // NullAngle is where the output is nought, arccos(−(1−β)/β) in rad; ok is false
 // for β below ½, which has no null.
 func NullAngle(beta float64) (theta float64, ok bool) {
-	if beta < 0.5 {
+	if !(beta >= 0.5) { // NaN has none
 		return 0, false
 	}
 	return math.Acos(-(1 - beta) / beta), true

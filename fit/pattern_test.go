@@ -28,8 +28,10 @@ func TestPatternsAgainstPublishedTable(t *testing.T) {
 			t.Errorf("β %g: null at %.1f°, table %g", p.beta, null/degree, p.null)
 		}
 	}
-	if _, ok := NullAngle(0.4); ok {
-		t.Error("a subcardioid has no null")
+	for _, beta := range []float64{0, 0.4, math.NaN()} {
+		if _, ok := NullAngle(beta); ok {
+			t.Errorf("β %g has no null", beta)
+		}
 	}
 }
 

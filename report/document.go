@@ -197,9 +197,18 @@ func (d *document) paragraph(s string, size float64, c color.Color) {
 			return
 		}
 		d.pdf.Text(marginLeft, d.y+size, line)
-		d.y += size * 1.38
+		d.y += size * leading
 	}
 }
+
+// textHeight is what a paragraph takes.
+func (d *document) textHeight(s string, size float64) float64 {
+	d.font("", size, d.style.Figure.Ink)
+	return float64(len(d.wrap(clean(s), d.width()))) * size * leading
+}
+
+// leading is the distance of lines relative to the size of type.
+const leading = 1.38
 
 // wrap breaks text at spaces, and inside a word that is longer than a line.
 func (d *document) wrap(s string, width float64) []string {

@@ -52,8 +52,8 @@ func followsSentence(d *Data) string {
 	if all == 0 {
 		return ""
 	}
-	return fmt.Sprintf("%.0f %% of the points lie within their ± of the fitted lines (95 %% should), from %s to %s.",
-		100*float64(in)/float64(all), number.Frequency(d.Result.Fit.From), number.Frequency(d.Result.Fit.To))
+	return fmt.Sprintf("%s %% of the points lie within their ± of the fitted lines (95 %% should), from %s to %s.",
+		number.Fixed(100*float64(in)/float64(all), 0), number.Frequency(d.Result.Fit.From), number.Frequency(d.Result.Fit.To))
 }
 
 func valueAt(hz, db []float64, f float64) (float64, bool) {
@@ -80,10 +80,20 @@ func responsesPage(d *Data, s Style) page {
 			"in which the loudspeaker drops out. Bands are ± (k = 2). Below %s the gate smooths.", plural(n, "distance", "distances"), number.Time(d.Result.Fit.Gate), d.Responses[n-1].Label, number.Frequency(1/math.Max(d.Result.Fit.Gate, 1e-4)))
 	}
 	return page{"What did the microphone hear at each distance?", answer, func(doc *document) {
-		h := doc.room()
-		doc.figure(figure.Responses{Style: s.Figure, Lines: absolute, Axis: "level, dB re a wire"}, h*0.52)
-		doc.figure(figure.Responses{Style: s.Figure, Lines: relative, Axis: "level, dB re the farthest"}, h*0.48)
+		doc.figure(figure.Stack{Upper: absoluteFigure(d, s, absolute), Lower: relativeFigure(s, relative)}, doc.room())
 	}}
+}
+
+func absoluteFigure(d *Data, s Style, lines []figure.Series) figure.Responses {
+	out := figure.Responses{Style: s.Figure, Lines: lines, Axis: "level, dB re a wire"}
+	if gate := d.Result.Fit.Gate; gate > 1e-4 && gate < 1 {
+		out.SmoothBelow = 1 / gate
+	}
+	return out
+}
+
+func relativeFigure(s Style, lines []figure.Series) figure.Responses {
+	return figure.Responses{Style: s.Figure, Lines: lines, Axis: "level, dB re the farthest"}
 }
 
 // responseSeries are the levels, and the levels relative to the farthest distance.

@@ -29,11 +29,13 @@ func patternPage(d *Data, s Style) page {
 	}}
 }
 
-// patternRows are figures of the pattern with the ± that the mix leaves them.
+// patternRows are figures of the pattern with the ± that the mix leaves them, the
+// larger where its two sides differ.
 func patternRows(beta, expanded float64) [][]string {
 	clip := func(b float64) float64 { return math.Min(math.Max(b, 0), 1) }
 	of := func(f func(float64) float64, unit string) string {
-		half := math.Abs(f(clip(beta+expanded))-f(clip(beta-expanded))) / 2
+		// Not half the difference of both ends: these have their best in the range.
+		half := math.Max(math.Abs(f(clip(beta+expanded))-f(beta)), math.Abs(f(clip(beta-expanded))-f(beta)))
 		return number.PlusMinus(f(beta), math.Max(half, 1e-3), unit)
 	}
 	level := func(angle float64) string {
@@ -42,12 +44,16 @@ func patternRows(beta, expanded float64) [][]string {
 		if v < 2*u {
 			return "below " + number.Fixed(20*math.Log10(math.Max(v+u, 1e-6)), 0) + " dB"
 		}
-		return number.PlusMinus(20*math.Log10(v), math.Max(20*math.Log10((v+u)/v), 0.03), "dB")
+		return number.PlusMinus(20*math.Log10(v), math.Max(20*math.Log10(v/(v-u)), 0.03), "dB")
 	}
 	null := "none"
 	if a, ok := fit.NullAngle(beta); ok {
-		lo, _ := fit.NullAngle(clip(beta + expanded))
-		half := math.Max((a-lo)*180/math.Pi, 0.1)
+		narrow, _ := fit.NullAngle(clip(beta + expanded))
+		wide, ok := fit.NullAngle(clip(beta - expanded))
+		if !ok {
+			wide = math.Pi
+		}
+		half := math.Max(math.Max(a-narrow, wide-a)*180/math.Pi, 0.1)
 		null = number.PlusMinus(a*180/math.Pi, half, "°")
 	} else if _, ok := fit.NullAngle(clip(beta + expanded)); ok {
 		null = "none, or near 180°"
@@ -83,7 +89,11 @@ func trustPage(d *Data, s Style) page {
 		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained.", 7.5, s.Figure.Soft)
 		doc.heading("Each distance by itself, given the far response that the others settle")
 		doc.table([]column{{"", 1, left}, {"mix", 1.5, decimal}, {"spacing, mm", 1.5, decimal}, {"misfit in the joint fit", 1.4, decimal}}, aloneRows(r))
-		doc.paragraph("A distance that disagrees with the others shows here. Far distances do not hold the spacing: that is as it should be.", 7.5, s.Figure.Soft)
+		doc.paragraph("A distance that disagrees with the others shows here. A far distance tells the spacing only through the far response, which the others have settled.", 7.5, s.Figure.Soft)
+		if h := min(doc.room()-10, 190); h > 110 {
+			doc.y += 10
+			doc.figure(aloneFigure(d, s), h)
+		}
 	}}
 }
 
@@ -118,6 +128,17 @@ func fitRows(r *fit.Result) [][]string {
 		{"unexplained, besides noise", number.Percent(f.Unexplained) + " of each response; " + number.Fixed(f.Alike, 1) + " neighbouring frequencies count as one"},
 		{"the solver", f.Status},
 	}
+}
+
+func aloneFigure(d *Data, s Style) figure.Alone {
+	out := figure.Alone{Style: s.Figure}
+	out.Beta, out.Half, out.Known = mixOf(d)
+	for _, r := range d.Result.Distances {
+		if v := r.Alone.GradientFraction; r.Used && v.Resolved && v.Value != nil && v.Expanded != nil {
+			out.M, out.Value, out.Expanded = append(out.M, r.Nominal), append(out.Value, *v.Value), append(out.Expanded, *v.Expanded)
+		}
+	}
+	return out
 }
 
 func aloneRows(r *fit.Result) (rows [][]string) {

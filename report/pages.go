@@ -4,11 +4,11 @@ package report
 func pages(d *Data, s Style) []page {
 	return []page{
 		summaryPage(d, s),
-		risePage(d, s),
 		responsesPage(d, s),
+		risePage(d, s),
 		distancePage(d, s),
-		patternPage(d, s),
 		impulsePage(d, s),
+		patternPage(d, s),
 		trustPage(d, s),
 		takesPage(d, s),
 	}

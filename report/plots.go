@@ -33,11 +33,12 @@ func Plots(d *Data, s Style) ([]Plot, error) {
 	const w = 500
 	return []Plot{
 		{"rise", figure.Rise{Style: s.Figure, Curves: riseCurves(d), Residuals: true}, w, 560},
-		{"responses", figure.Responses{Style: s.Figure, Lines: absolute, Axis: "level, dB re a wire"}, w, 320},
-		{"relative", figure.Responses{Style: s.Figure, Lines: relative, Axis: "level, dB re the farthest"}, w, 320},
+		{"responses", absoluteFigure(d, s, absolute), w, 320},
+		{"relative", relativeFigure(s, relative), w, 320},
 		{"distance", figure.Levels{Style: s.Figure, Curves: levelCurves(d)}, w, 380},
 		{"pattern", figure.Polar{Style: s.Figure, Beta: beta, Expanded: expanded, Known: known}, w, w},
 		{"impulses", impulses, w, 440},
+		{"alone", aloneFigure(d, s), w, 240},
 	}, nil
 }
 

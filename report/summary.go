@@ -2,7 +2,11 @@ package report
 
 import (
 	"fmt"
+	"math"
+	"slices"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 
 	"standoff/fit"
 	"standoff/report/figure"
@@ -13,8 +17,10 @@ func summaryPage(d *Data, s Style) page {
 	return page{"What is this microphone near a source?", summaryAnswer(d), func(doc *document) {
 		doc.warnings()
 		doc.headline()
-		doc.y += 8
-		h := min(330.0, doc.room()-300)
+		doc.y += 10
+		words := conditions(d)
+		below := doc.riseTableHeight() + doc.textHeight(words, 8.5) + doc.textHeight(caution(d.Powering), 8.5) + 2*24 + 12
+		h := min(330.0, doc.room()-below)
 		doc.figureAt(figure.Rise{Style: s.Figure, Curves: riseCurves(d), Small: true}, marginLeft, doc.width()*0.62, h)
 		beta, expanded, known := mixOf(d)
 		doc.figureAt(figure.Polar{Style: s.Figure, Beta: beta, Expanded: expanded, Known: known, Small: true},
@@ -22,7 +28,7 @@ func summaryPage(d *Data, s Style) page {
 		doc.y += h + 4
 		doc.riseTable()
 		doc.heading("Conditions")
-		doc.paragraph(conditions(d), 8.5, s.Figure.Ink)
+		doc.paragraph(words, 8.5, s.Figure.Ink)
 		doc.heading("Before this is repeated")
 		doc.paragraph(caution(d.Powering), 8.5, s.Figure.Ink)
 	}}
@@ -40,13 +46,44 @@ func summaryAnswer(d *Data) string {
 	if v, u, ok := riseAt(d.Result.RiseTable, 0.1, 100); ok {
 		out = append(out, fmt.Sprintf("With the grille 10 cm from a small source it gives %s at 100 Hz over its far response.", decibelsPlusMinus(v, u)))
 	}
+	out = append(out, reach(d.Result.RiseTable, 100)...)
 	if n := len(d.Result.Distances) - used(d.Result); n > 0 {
 		out = append(out, plural(n, "distance was", "distances were")+" left out.")
 	}
 	return strings.Join(out, " ")
 }
 
-func capitalised(s string) string { return strings.ToUpper(s[:1]) + s[1:] }
+// capitalised begins with a capital; a key of the rig stays as it is written.
+func capitalised(s string) string {
+	first, size := utf8.DecodeRuneInString(s)
+	if word, _, _ := strings.Cut(s, " "); size == 0 || strings.Contains(strings.TrimRight(word, "."), ".") {
+		return s
+	}
+	return string(unicode.ToUpper(first)) + s[size:]
+}
+
+// reach says from which distance on a frequency is within 1 dB of its far response,
+// as the table has it, between its columns on a logarithmic scale of distance.
+func reach(t fit.RiseTable, hz float64) []string {
+	row := slices.Index(t.Frequencies, hz)
+	if row < 0 || row >= len(t.DB) || len(t.DB[row]) != len(t.Distances) || len(t.Distances) == 0 {
+		return nil
+	}
+	rise, last := t.DB[row], len(t.Distances)-1
+	at := number.Frequency(hz)
+	if !(math.Abs(rise[last]) <= 1) {
+		return []string{"At " + number.Length(t.Distances[last]) + " it is still more than 1 dB away from that."}
+	}
+	for j := last; j > 0; j-- {
+		here, nearer := math.Abs(rise[j]), math.Abs(rise[j-1])
+		if nearer > 1 {
+			part := (1 - here) / (nearer - here)
+			r := t.Distances[j] * math.Pow(t.Distances[j-1]/t.Distances[j], part)
+			return []string{"From about " + number.Fixed(100*r, 0) + " cm on, " + at + " is within 1 dB of that."}
+		}
+	}
+	return []string{"At every distance of the table " + at + " is within 1 dB of that."}
+}
 
 func mixOf(d *Data) (beta, expanded float64, known bool) {
 	v := d.Result.Capsule.GradientFraction
@@ -73,11 +110,11 @@ func (d *document) warnings() {
 			d.paragraph(fmt.Sprintf("… and %s in result.json", plural(len(list)-i, "more warning", "more warnings")), 8.5, d.style.Figure.Accent)
 			break
 		}
-		text := capitalised(w.Text + " ")
-		if text = strings.TrimSpace(text); w.Hint != "" {
-			text += ": " + w.Hint
+		text := sentence(capitalised(strings.TrimSpace(w.Text)))
+		if w.Hint != "" {
+			text += " " + sentence(capitalised(strings.TrimSpace(w.Hint)))
 		}
-		d.paragraph("▪ "+sentence(text), 8.5, d.style.Figure.Accent)
+		d.paragraph("▪ "+text, 8.5, d.style.Figure.Accent)
 	}
 	if len(list) > 0 {
 		d.y += 6
@@ -170,6 +207,11 @@ func (d *document) riseTable() {
 		rows = append(rows, row)
 	}
 	d.table(columns, rows)
+}
+
+// riseTableHeight is what the table takes with its heading.
+func (d *document) riseTableHeight() float64 {
+	return 24 + 13 + float64(len(d.data.Result.RiseTable.Frequencies))*rowHeight + 4
 }
 
 func conditions(d *Data) string {

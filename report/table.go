@@ -19,8 +19,10 @@ const (
 )
 
 const (
-	rowHeight = 13.5
-	gutter    = 12 // between columns
+	rowHeight  = 13.5
+	lineHeight = 10.5 // from line to line within a cell
+	gutter     = 12   // between columns
+	mostLines  = 3    // of a cell
 )
 
 // table draws rows under a head; rows that no longer fit are counted in a last line.
@@ -34,7 +36,9 @@ func (d *document) table(columns []column, rows [][]string) {
 	d.rule(d.y, st.Ink, 0.6)
 	after := widestAfterPoint(d, columns, rows)
 	for i, row := range rows {
-		if d.room() < 2*rowHeight && i < len(rows)-1 {
+		lines := d.lines(columns, row, sum)
+		height := rowHeight + float64(lines-1)*lineHeight
+		if d.room() < height+rowHeight && i < len(rows)-1 {
 			d.font("", 8, st.Soft)
 			d.text(marginLeft, d.y+10, "and "+plural(len(rows)-i, "row", "rows")+" more in result.json")
 			d.y += rowHeight
@@ -49,7 +53,7 @@ func (d *document) table(columns []column, rows [][]string) {
 			}
 			x += w
 		}
-		d.y += rowHeight
+		d.y += height
 		d.rule(d.y, st.Grid, 0.4)
 	}
 	d.y += 4
@@ -76,15 +80,41 @@ func (d *document) heads(columns []column, sum float64) {
 // cell writes one cell; after is the room that a decimal column keeps for what
 // stands behind the point.
 func (d *document) cell(c column, s string, x, y, w, after float64) {
+	if c.align == left {
+		for i, line := range d.cellLines(s, w) {
+			d.text(x, y+float64(i)*lineHeight, line)
+		}
+		return
+	}
 	s = d.fitted(s, w-gutter)
 	switch c.align {
-	case left:
-		d.text(x, y, s)
 	case right:
 		d.textRight(x+w-gutter, y, s)
 	case decimal:
 		d.textRight(x+w-gutter-after+d.pdf.GetStringWidth(tail(s)), y, s)
 	}
+}
+
+// cellLines are the lines of a cell of text; what is longer than mostLines is cut.
+func (d *document) cellLines(s string, w float64) []string {
+	lines := d.wrap(clean(s), w-gutter)
+	if len(lines) > mostLines {
+		rest := strings.Join(lines[mostLines-1:], " ")
+		lines = append(lines[:mostLines-1], d.fitted(rest, w-gutter))
+	}
+	return lines
+}
+
+// lines is how many lines a row takes.
+func (d *document) lines(columns []column, row []string, sum float64) int {
+	d.font("", 8.5, d.style.Figure.Ink)
+	most := 1
+	for k, c := range columns {
+		if k < len(row) && c.align == left {
+			most = max(most, len(d.cellLines(row[k], c.share/sum*d.width())))
+		}
+	}
+	return most
 }
 
 // tail is what stands behind the digits before the point.

@@ -101,7 +101,8 @@ func (t levelTicks) Ticks(lo, hi float64) []plot.Tick {
 	return out
 }
 
-// levelAxis spans the values by at most eight whole steps of 1, 2 or 5 in any decade.
+// levelAxis spans the values with a little air, and marks at most eight whole steps of
+// 1, 2 or 5 in any decade.
 func levelAxis(p *plot.Plot, lo, hi float64) {
 	if !(hi > lo) {
 		lo, hi = lo-1, lo+1
@@ -116,7 +117,8 @@ func levelAxis(p *plot.Plot, lo, hi float64) {
 	for s := step; s < 0.999 && digits < 3; s *= 10 {
 		digits++
 	}
-	p.Y.Min, p.Y.Max = math.Floor(lo/step)*step, math.Ceil(hi/step)*step
+	air := 0.03 * (hi - lo)
+	p.Y.Min, p.Y.Max = lo-air, hi+air
 	p.Y.Tick.Marker = levelTicks{step, digits}
 }
 

@@ -35,10 +35,8 @@ func (l Levels) plot() *plot.Plot {
 		x.add(0.03, 1)
 		y.add(0, 30)
 	}
-	p.X.Scale = logScale{}
-	p.X.Min, p.X.Max = x.lo/1.35, x.hi // room for the names
+	distanceAxis(p, x.lo/1.35, x.hi) // room for the names
 	p.X.Label.Text = "distance to the capsule's centre, mm"
-	p.X.Tick.Marker = logTicks{label: func(m float64) string { return number.Fixed(1000*m, 0) }, at: []float64{1, 2, 3, 5, 7}}
 	p.Y.Label.Text = "level, dB re a far source at 1 m"
 	levelAxis(p, y.lo, y.hi)
 	var names []label
@@ -69,7 +67,10 @@ type Impulses struct {
 }
 
 // Draw draws it.
-func (m Impulses) Draw(c draw.Canvas) { m.plot().Draw(c) }
+func (m Impulses) Draw(c draw.Canvas) {
+	// The numbers at both ends of the axis reach over it.
+	m.plot().Draw(draw.Crop(c, vg.Points(8), -vg.Points(8), 0, 0))
+}
 
 func (m Impulses) plot() *plot.Plot {
 	s := m.Style
@@ -105,7 +106,7 @@ func (m Impulses) plot() *plot.Plot {
 		p.Add(curve{x, y, stroke(colour, vg.Points(0.8))})
 		names = append(names, label{l.Label, span.lo, -float64(i), colour})
 	}
-	p.Add(labels{s, names, true})
+	p.Add(above{s, names})
 	return p
 }
 

@@ -136,8 +136,34 @@ func (l labels) Plot(c draw.Canvas, p *plot.Plot) {
 		if math.Abs(moved[i]-places[i]) > 3 {
 			c.StrokeLine2(stroke(n.colour, l.s.Hair), at.X+gap/5, at.Y, to.X-gap/5, to.Y)
 		}
-		style.Color = n.colour
-		c.FillText(style, to, n.text)
+		style.Color = readable(n.colour)
+		c.FillText(style, to, short(n.text))
+	}
+}
+
+// longestName is what the room beside lines holds, in letters.
+const longestName = 10
+
+// short is a name that fits beside a line.
+func short(name string) string {
+	if r := []rune(name); len(r) > longestName {
+		return string(r[:longestName-1]) + "…"
+	}
+	return name
+}
+
+// above are names that stand on their lines, at their beginning.
+type above struct {
+	s    Style
+	list []label
+}
+
+func (a above) Plot(c draw.Canvas, p *plot.Plot) {
+	x, y := p.Transforms(&c)
+	style := a.s.text(a.s.Small, true, nil, float64(draw.XLeft), float64(draw.YBottom))
+	for _, n := range a.list {
+		style.Color = readable(n.colour)
+		c.FillText(style, vg.Point{X: x(n.x), Y: y(n.y) + vg.Points(2)}, short(n.text))
 	}
 }
 

@@ -2,6 +2,7 @@ package figure
 
 import (
 	"math"
+	"slices"
 
 	"standoff/fit"
 	"standoff/report/number"
@@ -41,6 +42,27 @@ func (p Polar) Draw(c draw.Canvas) {
 		line = append(line, p.place(centre, radius, theta, math.Abs(fit.LevelAtAngle(p.Beta, theta))))
 	}
 	c.StrokeLines(stroke(s.Near, s.Line*1.3), line)
+	if !p.Small {
+		p.null(c, centre, radius)
+	}
+}
+
+// null marks the angle at which nothing is heard, on both sides, where there is one.
+func (p Polar) null(c draw.Canvas, centre vg.Point, radius vg.Length) {
+	s := p.Style
+	angle, ok := fit.NullAngle(p.Beta)
+	if !ok {
+		return
+	}
+	sin, cos := math.Sincos(angle)
+	dash := stroke(s.Accent, vg.Points(0.7), vg.Points(3), vg.Points(2))
+	for _, side := range []vg.Length{-1, 1} {
+		c.StrokeLine2(dash, centre.X, centre.Y, centre.X+side*radius*vg.Length(sin), centre.Y+radius*vg.Length(cos))
+	}
+	at := 0.78 * radius
+	style := s.text(s.Small, true, s.Accent, float64(draw.XLeft), float64(draw.YBottom))
+	place := vg.Point{X: centre.X + at*vg.Length(sin) + vg.Points(4), Y: centre.Y + at*vg.Length(cos) + vg.Points(3)}
+	c.FillText(style, place, "null "+number.Fixed(angle*180/math.Pi, 0)+"°")
 }
 
 // place is the point for a level at an angle; 0° is up.
@@ -64,10 +86,9 @@ func (p Polar) band(c draw.Canvas, centre vg.Point, radius vg.Length) {
 		outer = append(outer, p.place(centre, radius, theta, hi))
 		inner = append(inner, p.place(centre, radius, theta, lo))
 	}
-	colour := pale(p.Style.Near, 0.75)
-	for i := 1; i < len(outer); i++ {
-		c.FillPolygon(colour, []vg.Point{outer[i-1], outer[i], inner[i], inner[i-1]})
-	}
+	// One area, not one for each angle: seams between areas show on screens.
+	slices.Reverse(inner)
+	c.FillPolygon(pale(p.Style.Near, 0.75), append(outer, inner...))
 }
 
 func (p Polar) axes(c draw.Canvas, centre vg.Point, radius vg.Length) {
@@ -82,9 +103,12 @@ func (p Polar) axes(c draw.Canvas, centre vg.Point, radius vg.Length) {
 			c.SetLineStyle(stroke(s.Soft, s.Hair))
 		}
 		c.Stroke(circle)
+		if dB == 0 {
+			continue // the pattern itself stands there
+		}
 		style := s.text(s.Small, false, s.Soft, float64(draw.XLeft), float64(draw.YCenter))
 		sin, cos := math.Sincos(11 * math.Pi / 180)
-		c.FillText(style, vg.Point{X: centre.X + r*vg.Length(sin), Y: centre.Y + r*vg.Length(cos) - s.Small*0.7}, number.Fixed(dB, 0))
+		c.FillText(style, vg.Point{X: centre.X + r*vg.Length(sin), Y: centre.Y + r*vg.Length(cos) - s.Small*0.7}, number.Fixed(dB, 0)+" dB")
 	}
 	step := 30
 	if p.Small {

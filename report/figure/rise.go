@@ -57,14 +57,37 @@ func (r Rise) bandOf() (lo, hi float64) {
 	return s.lo, s.hi
 }
 
+// nameRoom is the ratio of frequencies that the names before the lines take up.
+func (r Rise) nameRoom() float64 {
+	if r.Small {
+		return 2.6
+	}
+	return 2.0
+}
+
+// end is the round frequency at which the last line has ended: a line stops well
+// before the null of the far response, and so does the axis.
+func (r Rise) end() float64 {
+	last := newSpan()
+	for _, c := range r.Curves {
+		last.add(c.LineHz...)
+		last.add(c.Hz...)
+	}
+	for _, f := range []float64{1000, 2000, 5000, 10000} {
+		if last.hi <= f {
+			return f
+		}
+	}
+	return 20000
+}
+
 func (r Rise) upper() *plot.Plot {
 	s := r.Style
 	p := frame(s)
 	p.Add(grid{s})
 	lo, _ := r.bandOf()
 	from := math.Max(20, lo/1.6)
-	left := math.Max(20, math.Min(20, from))
-	logFrequency(p, left, 20000)
+	logFrequency(p, from/r.nameRoom(), r.end())
 	p.Y.Label.Text = "rise, dB"
 	var names []label
 	span := newSpan()
@@ -75,7 +98,7 @@ func (r Rise) upper() *plot.Plot {
 		p.Add(curve{x, y, stroke(colour, s.Line)})
 		if !r.Small {
 			p.Add(dots{c.Hz, c.DB, c.Expanded, colour, vg.Points(1.5)})
-			p.Add(cornerMark{c.Corner, stroke(colour, vg.Points(1.2))})
+			p.Add(cornerMark{c.Corner, from, stroke(colour, vg.Points(1.2))})
 			span.add(c.DB...)
 		}
 		span.add(y...)
@@ -106,12 +129,12 @@ func after(hz, db []float64, from float64) (x, y []float64) {
 
 // cornerMark is a short upright at +3 dB.
 type cornerMark struct {
-	hz    float64
-	style draw.LineStyle
+	hz, from float64 // from is where the lines begin
+	style    draw.LineStyle
 }
 
 func (m cornerMark) Plot(c draw.Canvas, p *plot.Plot) {
-	if m.hz <= p.X.Min || m.hz >= p.X.Max {
+	if m.hz < m.from || m.hz >= p.X.Max {
 		return
 	}
 	x, y := p.Transforms(&c)
@@ -133,9 +156,10 @@ func (r Rise) lower() *plot.Plot {
 	if span.empty() {
 		reach = 1
 	}
-	p.Add(flatBand{typical, s})
+	p.Add(flatBand{half: typical, s: s})
 	p.Add(grid{s})
-	logFrequency(p, 20, 20000)
+	lo, _ := r.bandOf()
+	logFrequency(p, math.Max(20, lo/1.6)/r.nameRoom(), r.end())
 	p.Y.Label.Text = "measured − fitted, dB"
 	for i, c := range r.Curves {
 		colour := s.Ramp(i, len(r.Curves))
@@ -161,15 +185,15 @@ func medianOf(x []float64) float64 {
 	return s[len(s)/2]
 }
 
-// flatBand is ± half across the frame.
+// flatBand is at ± half across the frame, with a line in its middle.
 type flatBand struct {
-	half float64
-	s    Style
+	at, half float64
+	s        Style
 }
 
 func (b flatBand) Plot(c draw.Canvas, p *plot.Plot) {
 	_, y := p.Transforms(&c)
-	lo, hi := max(y(-b.half), c.Min.Y), min(y(b.half), c.Max.Y)
+	lo, hi := max(y(b.at-b.half), c.Min.Y), min(y(b.at+b.half), c.Max.Y)
 	c.FillPolygon(b.s.Band, []vg.Point{{X: c.Min.X, Y: lo}, {X: c.Max.X, Y: lo}, {X: c.Max.X, Y: hi}, {X: c.Min.X, Y: hi}})
-	c.StrokeLine2(stroke(b.s.Soft, b.s.Hair), c.Min.X, y(0), c.Max.X, y(0))
+	c.StrokeLine2(stroke(b.s.Soft, b.s.Hair), c.Min.X, y(b.at), c.Max.X, y(b.at))
 }

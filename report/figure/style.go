@@ -73,3 +73,32 @@ func stroke(c color.Color, w vg.Length, dashes ...vg.Length) draw.LineStyle {
 
 // Figure is something that can be drawn.
 type Figure interface{ Draw(draw.Canvas) }
+
+// leastContrast is what small type needs against white (W3C, Web Content Accessibility
+// Guidelines 2.2, success criterion 1.4.3).
+const leastContrast = 4.5
+
+// readable darkens a colour until type in it can be read on white.
+func readable(c color.Color) color.RGBA {
+	out := color.RGBAModel.Convert(c).(color.RGBA)
+	for contrast(out) < leastContrast {
+		out = blend(out, color.RGBA{0, 0, 0, 255}, 0.04)
+	}
+	return out
+}
+
+// contrast is the ratio 1.05/(L + 0.05) of white to a colour of relative luminance L
+// (the same guidelines, for sRGB).
+func contrast(c color.RGBA) float64 { return 1.05 / (luminance(c) + 0.05) }
+
+// luminance is the relative luminance of a colour, 0 to 1 (IEC 61966-2-1, sRGB).
+func luminance(c color.RGBA) float64 {
+	linear := func(v uint8) float64 {
+		x := float64(v) / 255
+		if x <= 0.04045 {
+			return x / 12.92
+		}
+		return math.Pow((x+0.055)/1.055, 2.4)
+	}
+	return 0.2126*linear(c.R) + 0.7152*linear(c.G) + 0.0722*linear(c.B)
+}

@@ -17,6 +17,7 @@
 package jackbench
 
 import (
+	"context"
 	"fmt"
 	"os"
 	"os/exec"
@@ -64,9 +65,37 @@ func Start(t testing.TB, o Options) *Bench {
 	t.Setenv("JACK_NO_AUDIO_RESERVATION", "1")
 	// One PCM that cannot be opened: PortAudio's ALSA part stumbles over none.
 	t.Setenv("ALSA_CONFIG_PATH", b.write("asound.conf", "pcm.none { type hw card 99 }\n"))
+	b.alone()
 	t.Cleanup(b.stop)
 	b.serve()
 	return b
+}
+
+// alone waits until no other bench runs on this machine, in whatever process: all
+// JACK servers share one registry, and a server killed on purpose by one test
+// leaves it locked for the others.
+func (b *Bench) alone() {
+	b.t.Helper()
+	f, err := os.OpenFile(filepath.Join(os.TempDir(), "standoff-jackbench.lock"), os.O_CREATE|os.O_RDWR, 0o666)
+	if err != nil {
+		b.t.Fatal(err)
+	}
+	b.t.Cleanup(func() { f.Close() })
+	for begin := time.Now(); ; time.Sleep(50 * time.Millisecond) {
+		if syscall.Flock(int(f.Fd()), syscall.LOCK_EX|syscall.LOCK_NB) == nil {
+			return
+		}
+		if time.Since(begin) > 5*time.Minute {
+			b.t.Fatal("another bench has not ended in 5 minutes")
+		}
+	}
+}
+
+// ask runs a small JACK tool, which hangs when the server does.
+func ask(tool string, args ...string) ([]byte, error) {
+	ctx, cancel := context.WithTimeout(context.Background(), 5*time.Second)
+	defer cancel()
+	return exec.CommandContext(ctx, tool, args...).Output()
 }
 
 func need(t testing.TB, tool string) {
@@ -98,7 +127,10 @@ func (b *Bench) serve() {
 		schedule = []string{"-R", "-P", "10"}
 	}
 	b.jackd = b.background("jackd", append(schedule, args...)...)
-	b.until("jackd did not start", func() bool { return exec.Command("jack_lsp").Run() == nil })
+	b.until("jackd did not start", func() bool {
+		_, err := ask("jack_lsp")
+		return err == nil
+	})
 }
 
 // background starts a program whose output goes to a file of its name.
@@ -174,7 +206,7 @@ if [ -f "$dir/$name.pid" ]; then
   pid=$(cat "$dir/$name.pid")
   kill -INT "$pid" 2>/dev/null || true
   i=0
-  while jack_lsp 2>/dev/null | grep -q "^$name:"; do
+  while timeout 5 jack_lsp 2>/dev/null | grep -q "^$name:"; do
     i=$((i+1)); [ $i -lt 200 ] || { kill -KILL "$pid" 2>/dev/null || true; break; }
     sleep 0.02
   done
@@ -190,7 +222,7 @@ X
 setsid jconvolver -s "$JACK_DEFAULT_SERVER" -N "$name" "$dir/$name.conf" > "$dir/$name.log" 2>&1 < /dev/null &
 echo $! > "$dir/$name.pid"
 i=0
-until jack_lsp 2>/dev/null | grep -qx "$name:loopback"; do
+until timeout 5 jack_lsp 2>/dev/null | grep -qx "$name:loopback"; do
   i=$((i+1)); [ $i -lt 500 ] || { echo "$name did not come up" >&2; cat "$dir/$name.log" >&2; exit 1; }
   sleep 0.02
 done
@@ -219,7 +251,7 @@ func (b *Bench) KillClient(device string) {
 		}
 	}
 	b.until(device+" does not go", func() bool {
-		out, _ := exec.Command("jack_lsp").Output()
+		out, _ := ask("jack_lsp")
 		return !strings.Contains(string(out), device+":")
 	})
 }
