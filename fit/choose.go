@@ -100,7 +100,7 @@ func clearOfNull(d *Dataset, models []Model, claimed string, before *Analysis) (
 		return nil, err
 	}
 	best := a.Best()
-	limit := nullShare / useShare * best.Model.HighestUse(best.Acoustics)
+	limit := nullShare * best.Model.null(best.Acoustics)
 	if limit >= d.Hz[len(d.Hz)-1] {
 		return a, nil
 	}

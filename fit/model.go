@@ -26,6 +26,12 @@ const (
 	LowPass      = "low-pass" // it is a first-order low-pass, of the same delay at low frequency
 )
 
+// Near reports whether two sets of values are the same to what matters next to the
+// method's own uncertainty: the mix to 2e−5, the spacing to 5 µm.
+func (a Acoustics) Near(b Acoustics) bool {
+	return math.Abs(a.Beta-b.Beta) < 2e-5 && math.Abs(a.Spacing-b.Spacing) < 5e-6
+}
+
 func (m Model) String() string {
 	body := " on a " + m.Body + " body"
 	if m.Body == Open {
@@ -139,11 +145,49 @@ func (m Model) RiseForGate(a Acoustics, r float64) func(f float64) complex128 {
 }
 
 // HighestUse is the frequency in Hz up to which the rise means something: well
-// below the far form's null at c/(d + cτ).
-func (m Model) HighestUse(a Acoustics) float64 {
+// below the far form's first null.
+func (m Model) HighestUse(a Acoustics) float64 { return useShare * m.null(a) }
+
+// null is the frequency in Hz at which the far form has its first null or comes
+// near one, c/(d + cτ) for ports in free air with a delay. It is found where what
+// comes in at the front and what comes in at the rear cancel: where their sum is,
+// after its first maximum, less than deepEnough of the sum of their magnitudes. A
+// rear network that is a low-pass takes away what could cancel; without a null up
+// to the one that the ports alone would have, that one is taken.
+func (m Model) null(a Acoustics) float64 {
+	ports := a.Speed / a.Spacing
+	if m.Form == Summed && m.Body == Open {
+		return ports
+	}
 	length := a.Spacing
 	if m.Form == PhaseShift {
-		length += a.Spacing * (1 - a.Beta) / a.Beta
+		length /= a.Beta // d + cτ
 	}
-	return useShare * a.Speed / length
+	step := 0.02 * a.Speed / length
+	passed := false
+	for f := 5 * step; f < ports; f += step {
+		switch left := m.cancellation(a, f); {
+		case left > 0.95:
+			passed = true
+		case passed && left < deepEnough:
+			return f / nullShare
+		}
+	}
+	return ports
+}
+
+// deepEnough is sin(0.75π), what the two entries of a delay leave of each other at
+// three quarters of the way to the null.
+const deepEnough = 0.7071
+
+// cancellation is |sum|/(|front| + |rear|) of what the two entries contribute to
+// the far form.
+func (m Model) cancellation(a Acoustics, f float64) float64 {
+	k := 2 * math.Pi * f / a.Speed
+	front, rear := cmplx.Rect(1, k*a.Spacing/2), cmplx.Rect(1, -k*a.Spacing/2)
+	if m.Body == Sphere {
+		front, rear = planeOnPoles(k, a.Spacing/3)
+	}
+	one, other := m.mix(a, k, front, 0, 0.5*front), m.mix(a, k, 0, rear, 0.5*rear)
+	return cmplx.Abs(one+other) / (cmplx.Abs(one) + cmplx.Abs(other))
 }

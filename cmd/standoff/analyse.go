@@ -276,28 +276,46 @@ func (a *analysed) fitAll(ctx context.Context) error {
 	for i := range a.groups {
 		a.groups[i].rise = firstRise(a.rig, a.groups[i].distance)
 	}
-	var first *fit.Analysis
-	var err error
-	for range rounds {
-		a.spectra(hz, clock)
-		if first, err = fit.Guess(a.dataset(hz, clock), models(a.rig), first); err != nil {
-			return err
-		}
-		if err := ctx.Err(); err != nil {
-			return err
-		}
-		b := first.Best()
-		for i := range a.groups {
-			a.groups[i].rise = b.Model.RiseForGate(b.Acoustics, b.Distances[i])
-		}
+	first, err := a.compacted(ctx, hz, clock)
+	if err != nil {
+		return err
 	}
-	a.spectra(hz, clock)
 	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed, first)
 	return err
 }
 
-// rounds is how often the rise is fitted before the final fit.
-const rounds = 2
+// compacted finds the rise by which responses are divided before they are gated.
+// What a gate cuts off a response that is not compact depends on the rise, and the
+// rise on what was cut off: gate and fit follow each other until the fit stays
+// where it is. All models are tried at first, then the one that fits best.
+func (a *analysed) compacted(ctx context.Context, hz []float64, clock string) (*fit.Analysis, error) {
+	var before *fit.Analysis
+	tried := models(a.rig)
+	for range mostRounds {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		a.spectra(hz, clock)
+		now, err := fit.Guess(a.dataset(hz, clock), tried, before)
+		if err != nil {
+			return nil, err
+		}
+		best := now.Best()
+		for i := range a.groups {
+			a.groups[i].rise = best.Model.RiseForGate(best.Acoustics, best.Distances[i])
+		}
+		still := before != nil && before.Best().Model == best.Model && best.Acoustics.Near(before.Best().Acoustics)
+		before, tried = now, []fit.Model{best.Model}
+		if still {
+			break
+		}
+	}
+	a.spectra(hz, clock)
+	return before, nil
+}
+
+// mostRounds is how often gate and fit follow each other at most.
+const mostRounds = 8
 
 func (a *analysed) placed() []measure.Placed {
 	_, placed := a.acceptedTakes()
