@@ -37,14 +37,16 @@ func (a *Analysis) alone(i int) Alone {
 	if !ok {
 		return nothing
 	}
-	out := Alone{PortSpacing: spacingValue(free.spacing, math.Hypot(free.spacingSE, methodSpacing*free.spacing), free.beta, free.betaSE, free.atBound)}
+	method := a.Data
+	out := Alone{PortSpacing: spacingValue(free.spacing, standard(math.Hypot(free.spacingSE, method.MethodSpacing*free.spacing)),
+		free.beta-Coverage*free.betaSE, free.atBound)}
 	if !out.PortSpacing.Resolved {
 		l.fixed = best.Acoustics.Spacing
 		if free, ok = l.solve(best.Acoustics); !ok {
 			return nothing
 		}
 	}
-	out.GradientFraction = mixValue(free.beta, math.Hypot(free.betaSE, methodBeta))
+	out.GradientFraction = mixValue(free.beta, standard(math.Hypot(free.betaSE, method.MethodMix)))
 	return out
 }
 

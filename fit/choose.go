@@ -5,7 +5,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"math/cmplx"
 	"slices"
 	"sync"
 )
@@ -26,7 +25,7 @@ func (a *Analysis) Best() *Joint { return a.Candidates[0] }
 // far response nears its null, where the rise means nothing, are left out and
 // the fit is made again.
 //
-// The dataset's Unexplained is estimated: the fit is made with a first guess, and
+// The dataset's Unexplained and Room are estimated: the fit is made with a first guess, and
 // again with what the best model leaves over.
 //
 // before, an earlier look at much the same data, gives the starts; nil is none.
@@ -37,9 +36,11 @@ func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Ana
 	if err != nil {
 		return nil, err
 	}
-	left := *a.Data
-	left.Unexplained = a.Best().unexplained()
-	if a, err = analyse(&left, models, claimed, a); err != nil {
+	left := a.Data.explainedBy(a.Best())
+	if j, err := fitModel(left, a.Best().Model, a.Best()); err == nil {
+		left = left.explainedBy(j)
+	}
+	if a, err = analyse(left, models, claimed, a); err != nil {
 		return nil, err
 	}
 	if half := left.below(left.Hz[len(left.Hz)-1] / 2); len(half.Hz) >= 6 {
@@ -55,43 +56,12 @@ func Guess(d *Dataset, models []Model, before *Analysis) (*Analysis, error) {
 	return analyse(&guessed, models, "", before)
 }
 
-// What a response is thought to differ from the model before that is known, and
-// the least and the most that is believed afterwards, relative to its magnitude.
-const (
-	firstUnexplained = 0.003
-	leastUnexplained = 0.0003
-	mostUnexplained  = 0.1
-)
-
-// unexplained is the relative error which, beside the noise, makes the reduced
-// chi-square 1, found by bisection.
-func (j *Joint) unexplained() float64 {
-	p := newSeparable(j.data, j.Model)
-	p.evaluate(j.x)
-	chi := func(u float64) float64 {
-		var sum float64
-		for i, pt := range j.data.Points {
-			for n, y := range pt.Value {
-				r := y - scaled(p.h[i][n], p.sigma[i][n])*p.s[n]
-				a := cmplx.Abs(y)
-				sum += 2 * (real(r)*real(r) + imag(r)*imag(r)) / (pt.Variance[n] + u*u*a*a)
-			}
-		}
-		return sum / math.Max(float64(j.Freedom), 1)
-	}
-	lo, hi := leastUnexplained, mostUnexplained
-	if chi(lo) <= 1 {
-		return lo
-	}
-	for range 40 {
-		mid := math.Sqrt(lo * hi)
-		if chi(mid) > 1 {
-			lo = mid
-		} else {
-			hi = mid
-		}
-	}
-	return hi
+// explainedBy is the dataset with what a fit leaves over.
+func (d *Dataset) explainedBy(j *Joint) *Dataset {
+	out := *d
+	out.level = j.levels()
+	out.Unexplained, out.Room = leftovers(j.residues())
+	return &out
 }
 
 func clearOfNull(d *Dataset, models []Model, claimed string, before *Analysis) (*Analysis, error) {
@@ -235,14 +205,13 @@ func (a *Analysis) formUncertainty(of func(*Joint) float64) float64 {
 // band: by how much the lower half of the band disagrees with the whole, beyond
 // what it is less certain by. A model that holds gives next to nothing; one that
 // holds nowhere quite gives another answer in every band.
-func (a *Analysis) bandUncertainty(of func(*Joint) (value, se float64)) float64 {
+func (a *Analysis) bandUncertainty(of, se func(*Joint) float64) float64 {
 	if a.lower == nil || !a.lower.Status.Good() {
 		return 0
 	}
-	whole, se := of(a.Best())
-	part, wider := of(a.lower)
-	excess := (part-whole)*(part-whole) - math.Max(wider*wider-se*se, 0)
-	return math.Sqrt(math.Max(excess, 0) / 3)
+	off := of(a.lower) - of(a.Best())
+	wider, whole := se(a.lower), se(a.Best())
+	return math.Sqrt(math.Max(off*off-math.Max(wider*wider-whole*whole, 0), 0) / 3)
 }
 
 func (a *Analysis) candidates() []Candidate {
@@ -286,6 +255,9 @@ func (d *Dataset) below(limit float64) *Dataset {
 	}
 	out := *d
 	out.Hz = d.Hz[:n]
+	if d.level != nil {
+		out.level = d.level[:n]
+	}
 	out.Points = append([]Point(nil), d.Points...)
 	for i := range out.Points {
 		out.Points[i].Value = out.Points[i].Value[:n]

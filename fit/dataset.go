@@ -18,12 +18,19 @@ type Dataset struct {
 	Speed, SpeedUncertainty     float64 // c, m/s
 	FreeClock                   bool    // every response has a delay of its own
 
-	// Unexplained is what a response differs from any first-order model besides
-	// its noise, relative to its magnitude (standard, both quadratures together):
-	// what is left of the room, small movements, the capsule's own deviations.
-	// Analyse estimates it.
-	Unexplained float64
-	inflate     float64 // of all variances; 0 is 1
+	// What a response differs from any first-order model besides its noise.
+	// Unexplained is relative to its magnitude: small movements, the capsule's own
+	// deviations. Room is the same at all distances, as reflections are: relative to
+	// what the far response would be at 1 m, in 1/m. Both are standard, both
+	// quadratures together. Analyse estimates them.
+	Unexplained, Room float64
+
+	// What the method itself is right to where nothing else is left to doubt, as
+	// standard uncertainties: of the mix, and of the spacing relative to it.
+	MethodMix, MethodSpacing float64
+
+	level   []float64 // |S·Far| on Hz, for Room; nil is none
+	inflate float64   // of all variances; 0 is 1
 }
 
 // Point is one distance.
@@ -77,11 +84,23 @@ func (d *Dataset) without(i int) *Dataset {
 
 // variance is E|error|² of point i at frequency j, everything together.
 func (d *Dataset) variance(i, j int) float64 {
-	p := d.Points[i]
-	y := real(p.Value[j])*real(p.Value[j]) + imag(p.Value[j])*imag(p.Value[j])
+	return math.Max(d.inflate, 1) * (d.Points[i].Variance[j] + d.leftover(i, j) + d.room(j))
+}
+
+// leftover is the part of it that is relative to the response.
+func (d *Dataset) leftover(i, j int) float64 {
+	y := d.Points[i].Value[j]
 	// A recording with digital silence has no noise at all; rounding it has.
 	const rounding = 1e-12
-	return math.Max(d.inflate, 1) * (p.Variance[j] + (d.Unexplained*d.Unexplained+rounding)*y)
+	return (d.Unexplained*d.Unexplained + rounding) * (real(y)*real(y) + imag(y)*imag(y))
+}
+
+// room is the part that is alike at all distances.
+func (d *Dataset) room(j int) float64 {
+	if d.level == nil {
+		return 0
+	}
+	return d.Room * d.Room * d.level[j] * d.level[j]
 }
 
 // scaledBy multiplies all variances, for a misfit that they do not explain.

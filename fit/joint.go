@@ -35,7 +35,8 @@ type Joint struct {
 	far []complex128 // S on the dataset's grid
 	// Of S: how far the fit holds it, E|error|².
 	farVariance []float64
-	covariance  [2][2]float64 // of β and d
+	covariance  [2][2]float64  // of β and d
+	parts       [causes]spread // what it comes from
 	data        *Dataset
 	misfit      []float64 // reduced chi-square of each point
 	x           []float64
@@ -207,6 +208,7 @@ func (j *Joint) errors(p *separable, r *lsq.Result) {
 	se := func(i int) float64 { return math.Sqrt(math.Max(c.At(i, i), 0)) }
 	j.BetaSE, j.SpacingSE = se(p.at.beta), se(p.at.spacing)
 	j.SetbackSE, j.RadiusSE, j.SpeedSE = se(p.at.setback), se(p.at.radius), se(p.at.speed)
+	j.parts = p.contributions(r.X, c)
 	j.covariance = [2][2]float64{{c.At(0, 0), c.At(0, 1)}, {c.At(1, 0), c.At(1, 1)}}
 	for i := range j.DistanceSE {
 		t, s := p.at.tape+i, p.at.setback

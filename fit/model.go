@@ -135,6 +135,15 @@ func (m Model) freeField(a Acoustics, r, f float64) complex128 {
 	return pointPressure(k, r)
 }
 
+// Travel is the time in s from the source to r: of a piston the mean over its
+// middle and its rim, which is what its low-frequency phase says.
+func (m Model) Travel(a Acoustics, r float64) float64 {
+	if m.Source == PointSource {
+		return r / a.Speed
+	}
+	return 0.5 * (r + math.Hypot(r, a.Radius)) / a.Speed
+}
+
 // RiseForGate is Rise as a function of frequency for making responses compact
 // before they are gated: above HighestUse, where the rise means nothing, it stays
 // as it is there.

@@ -11,12 +11,12 @@ import (
 // Result says what the analysis found. Takes, polarity, version and what is
 // known of gate and clock are added by who knows them.
 func (a *Analysis) Result() *Result {
-	best := a.Best()
-	r := &Result{Schema: Schema, Polarity: "unknown", Capsule: a.capsule(), Models: a.candidates(), RiseTable: a.riseTable()}
+	best, budget := a.Best(), a.budget()
+	r := &Result{Schema: Schema, Polarity: "unknown", Capsule: a.capsule(budget), Budget: budget, Models: a.candidates(), RiseTable: a.riseTable()}
 	r.Fit = FitSummary{
 		From: a.Data.Hz[0], To: a.Data.Hz[len(a.Data.Hz)-1],
 		ReducedChiSquare: best.ReducedChiSquare(), Points: len(a.Data.Hz) * len(a.Data.Points),
-		Unexplained: a.Data.Unexplained, Alike: best.Alike, DegreesOfFreedom: best.Freedom, Status: best.Status.String(), Clock: measure.ClockCommon,
+		Unexplained: a.Data.Unexplained, Room: a.Data.Room, Alike: best.Alike, DegreesOfFreedom: best.Freedom, Status: best.Status.String(), Clock: measure.ClockCommon,
 		SpeedOfSound: best.Acoustics.Speed, SpeedExpanded: Coverage * best.SpeedSE,
 	}
 	if a.Data.FreeClock {
@@ -44,22 +44,20 @@ func (a *Analysis) eachAlone() []Alone {
 	return out
 }
 
-func (a *Analysis) capsule() CapsuleResult {
+func (a *Analysis) capsule(b Budget) CapsuleResult {
 	best := a.Best()
 	ac := best.Acoustics
-	betaU := a.betaUncertainty()
-	spacingU := a.spacingUncertainty()
 	c := CapsuleResult{
 		Model: best.Model.Form, Body: best.Model.Body, Rear: best.Model.rear(), Claimed: a.Claimed,
-		GradientFraction: mixValue(ac.Beta, betaU),
-		PortSpacing:      spacingValue(ac.Spacing, spacingU, ac.Beta, betaU, best.SpacingAtBound),
+		GradientFraction: mixValue(ac.Beta, b.GradientFraction),
+		PortSpacing:      spacingValue(ac.Spacing, b.PortSpacing, ac.Beta-b.GradientFraction.Expanded, best.SpacingAtBound),
 		Setback:          resolved(best.Setback, best.SetbackSE, "m"),
 		SourceRadius:     resolved(ac.Radius, best.RadiusSE, "m"),
 	}
 	if best.BetaSE == 0 || best.BetaAtBound || !best.Status.Good() {
 		c.GradientFraction, c.PortSpacing = unresolved("1"), unresolved("m")
 	}
-	if !c.PortSpacing.Resolved && ac.Beta-Coverage*betaU >= leastGradient {
+	if !c.PortSpacing.Resolved && ac.Beta-b.GradientFraction.Expanded >= leastGradient {
 		c.PortSpacing.UpperLimit = a.upperSpacing()
 	}
 	if v := c.GradientFraction; v.Resolved {
@@ -70,27 +68,6 @@ func (a *Analysis) capsule() CapsuleResult {
 		}
 	}
 	return c
-}
-
-// What the method itself is right to where nothing else is left to doubt, as
-// standard uncertainties: found on virtual benches whose truth is known (see
-// STUDY.md), where gate and room left 0.0002 to 0.001 in the mix and 0.1 to 0.5 %
-// in the spacing.
-const (
-	methodBeta    = 0.001
-	methodSpacing = 0.004 // relative
-)
-
-func (a *Analysis) betaUncertainty() float64 {
-	form := a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Beta })
-	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return j.Acoustics.Beta, j.BetaSE })
-	return root(a.Best().BetaSE, form, band, methodBeta)
-}
-
-func (a *Analysis) spacingUncertainty() float64 {
-	form := a.formUncertainty(func(j *Joint) float64 { return j.Acoustics.Spacing })
-	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return j.Acoustics.Spacing, j.SpacingSE })
-	return root(a.Best().SpacingSE, form, band, methodSpacing*a.Best().Acoustics.Spacing)
 }
 
 // root is the root of the sum of squares.

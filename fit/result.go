@@ -28,6 +28,7 @@ type Result struct {
 	Polarity  string            `json:"polarity"` // normal, reversed, unknown
 	Fit       FitSummary        `json:"fit"`
 	Models    []Candidate       `json:"models"` // what was compared, best first
+	Budget    Budget            `json:"budget"`
 	RiseTable RiseTable         `json:"rise_table"`
 	Warnings  []measure.Warning `json:"warnings"`
 }
@@ -84,6 +85,7 @@ type FitSummary struct {
 	To               float64 `json:"to_hz"`
 	ReducedChiSquare float64 `json:"reduced_chi_square"`
 	Unexplained      float64 `json:"unexplained"` // besides noise, relative, standard
+	Room             float64 `json:"room_1_m"`    // what reflections leave, the far response at 1 m being 1
 	Alike            float64 `json:"alike"`       // neighbouring frequencies that deviate together
 	Points           int     `json:"points"`
 	DegreesOfFreedom int     `json:"degrees_of_freedom"`

@@ -47,8 +47,8 @@ func (a *Analysis) predictedRise(r, f float64) (dB, u float64) {
 	c := best.covariance
 	variance := byBeta*byBeta*c[0][0] + bySpacing*bySpacing*c[1][1] + 2*byBeta*bySpacing*c[0][1] +
 		bySetback*bySetback*best.SetbackSE*best.SetbackSE +
-		byBeta*byBeta*methodBeta*methodBeta
-	band := a.bandUncertainty(func(j *Joint) (float64, float64) { return value(j), math.Abs(byBeta) * j.BetaSE })
+		byBeta*byBeta*a.Data.MethodMix*a.Data.MethodMix
+	band := a.bandUncertainty(value, func(j *Joint) float64 { return math.Abs(byBeta) * j.BetaSE })
 	return dB, root(math.Sqrt(math.Max(variance, 0)), a.formUncertainty(value), band)
 }
 

@@ -78,7 +78,7 @@ func (a *Analysis) lineUncertainty(r, f, place float64) float64 {
 	const step = 1e-5
 	here := rise(0, 0, 0)
 	byBeta, bySpacing, byPlace := (rise(step, 0, 0)-here)/step, (rise(0, step, 0)-here)/step, (rise(0, 0, step)-here)/step
-	u := byBeta * a.betaUncertainty()
+	u := byBeta * a.budget().GradientFraction.Standard
 	if best.SpacingSE > 0 {
 		u = math.Hypot(u, bySpacing*best.SpacingSE)
 	}

@@ -22,26 +22,37 @@ const (
 	leastGradient = 0.05 // of which a spacing can be told at all
 )
 
+// of is a value with the uncertainty that a budget gives it.
+func (s BudgetSum) of(v float64, unit string) Value {
+	return Value{Value: ptr(v), Expanded: ptr(s.Expanded), CoverageFactor: s.CoverageFactor, Resolved: true, Unit: unit}
+}
+
+// standard is a sum of one part that is well known.
+func standard(u float64) BudgetSum {
+	return BudgetSum{Standard: u, Freedom: Freedom(math.Inf(1)), CoverageFactor: Coverage, Expanded: Coverage * u}
+}
+
 // mixValue is the mix where it is held; the model may be fitted a little outside
 // 0 to 1, the value reported lies within.
-func mixValue(beta, u float64) Value {
-	if !(Coverage*u < widestMix) || u == 0 {
+func mixValue(beta float64, u BudgetSum) Value {
+	if !(u.Expanded < widestMix) || u.Standard == 0 {
 		v := unresolved("1")
-		if upper := beta + 1.645*u; u > 0 && upper < 1 {
+		if upper := beta + 1.645*u.Standard; u.Standard > 0 && upper < 1 {
 			v.UpperLimit = ptr(math.Max(upper, 0))
 		}
 		return v
 	}
-	return resolved(math.Min(math.Max(beta, 0), 1), u, "1")
+	return u.of(math.Min(math.Max(beta, 0), 1), "1")
 }
 
 // spacingValue is the spacing where it is held: not on a bound, narrow enough,
-// and the capsule has a gradient part whose spacing it could be.
-func spacingValue(d, u, beta, betaU float64, atBound bool) Value {
-	if atBound || u == 0 || !(Coverage*u < widestSpacing*d) || beta-Coverage*betaU < leastGradient {
+// and the capsule has a gradient part, at least leastMix of it, whose spacing it
+// could be.
+func spacingValue(d float64, u BudgetSum, leastMix float64, atBound bool) Value {
+	if atBound || u.Standard == 0 || !(u.Expanded < widestSpacing*d) || leastMix < leastGradient {
 		return unresolved("m")
 	}
-	return resolved(d, u, "m")
+	return u.of(d, "m")
 }
 
 // upperSpacing is the one-sided 95 % limit of the spacing by its profile

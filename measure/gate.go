@@ -19,6 +19,13 @@ type Gate struct {
 // Duration is the effective length in s: of a rectangle with the same energy.
 func (g Gate) Duration() float64 { return g.Lead*0.6875 + g.Length - g.Fall*0.625 }
 
+// Lowest is the frequency in Hz below which a gated response is no measurement:
+// less than 0.6 of a period fits into the gate, and what stands there is spilt over
+// from above and from the loudspeaker's own tail. On virtual benches points at 0.4
+// of a period moved a mix by 0.001, from 0.6 on by less than 0.0001 (5.7 ms gate, a
+// loudspeaker with a second-order high-pass at 90 Hz).
+func (g Gate) Lowest() float64 { return 0.6 / g.Duration() }
+
 // The limits of a gate that is chosen by itself, s, and the part of it that
 // closes.
 const (

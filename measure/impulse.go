@@ -17,6 +17,14 @@ type ImpulseResponse struct {
 	Noise   Density   // of what is noise in Samples
 }
 
+// ArrivingAt is the same response with its direct sound taken to be at t samples
+// after the start of the excitation.
+func (ir *ImpulseResponse) ArrivingAt(t float64) *ImpulseResponse {
+	out := *ir
+	out.Arrival = t
+	return &out
+}
+
 // Density is a two-sided power density per sample on a rising frequency grid.
 type Density struct {
 	Hz, Power []float64

@@ -20,8 +20,9 @@ func (a *analysed) data(version string) *report.Data {
 	if len(a.takes) > 0 {
 		d.Measured = a.takes[0].take.Started
 	}
-	for _, g := range a.groups {
-		d.Responses = append(d.Responses, a.response(g))
+	shown := a.averages(a.displayGrid(), a.result.Fit.Clock)
+	for i, g := range a.groups {
+		d.Responses = append(d.Responses, a.response(g, shown[i]))
 		d.Impulses = append(d.Impulses, a.impulse(g))
 	}
 	return d
@@ -49,8 +50,7 @@ func (a *analysed) displayGrid() []float64 {
 
 // response is the gated average at one distance, in dB relative to a wire from
 // output to input.
-func (a *analysed) response(g group) report.Response {
-	spec := a.spectrumOf(g, a.displayGrid(), a.result.Fit.Clock)
+func (a *analysed) response(g group, spec measure.Spectrum) report.Response {
 	out := report.Response{Label: g.distance.Label, Metres: g.distance.Metres, Used: true, Hz: spec.Hz}
 	for j, v := range spec.Value {
 		level := math.Max(cmplx.Abs(v), 1e-12)
