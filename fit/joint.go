@@ -8,6 +8,8 @@ import (
 	"slices"
 
 	"standoff/fit/lsq"
+
+	"gonum.org/v1/gonum/mat"
 )
 
 // Joint is one model fitted to all distances together.
@@ -37,6 +39,7 @@ type Joint struct {
 	farVariance []float64
 	covariance  [2][2]float64  // of β and d
 	parts       [causes]spread // what it comes from
+	full        *mat.SymDense  // of all parameters
 	data        *Dataset
 	misfit      []float64 // reduced chi-square of each point
 	x           []float64
@@ -81,11 +84,15 @@ func (p *separable) scan(keep int) [][]float64 {
 	}
 	var places []place
 	res := make([]float64, p.size())
-	for _, beta := range []float64{0.02, 0.12, 0.22, 0.32, 0.45, 0.6, 0.8, 1} {
-		for spacing := 0.006; spacing < 0.07; spacing *= 1.25 {
-			x := p.start(math.Max(beta, lower[p.at.beta]), math.Min(spacing, upper[p.at.spacing]))
+	for spacing := 0.006; spacing < 0.07; spacing *= 1.25 {
+		d := math.Min(spacing, upper[p.at.spacing])
+		p.evaluate(p.start(0.5, d))
+		for _, beta := range []float64{0.02, 0.12, 0.22, 0.32, 0.45, 0.6, 0.8, 1} {
+			x := p.start(math.Max(beta, lower[p.at.beta]), d)
 			p.settleDelays(x)
-			p.residuals(res, x)
+			p.remix(p.h, x)
+			p.eliminate()
+			p.compare(res, x)
 			var cost float64
 			for _, r := range res {
 				cost += r * r
@@ -208,6 +215,7 @@ func (j *Joint) errors(p *separable, r *lsq.Result) {
 	se := func(i int) float64 { return math.Sqrt(math.Max(c.At(i, i), 0)) }
 	j.BetaSE, j.SpacingSE = se(p.at.beta), se(p.at.spacing)
 	j.SetbackSE, j.RadiusSE, j.SpeedSE = se(p.at.setback), se(p.at.radius), se(p.at.speed)
+	j.full = c
 	j.parts = p.contributions(r.X, c)
 	j.covariance = [2][2]float64{{c.At(0, 0), c.At(0, 1)}, {c.At(1, 0), c.At(1, 1)}}
 	for i := range j.DistanceSE {

@@ -30,6 +30,7 @@ func (a *Analysis) Result() *Result {
 			Alone: alone[i], Misfit: best.misfit[i],
 		})
 	}
+	r.Profiles, r.Octaves = a.profiles(), a.octaves()
 	r.Warnings = a.warnings(r)
 	return r
 }
@@ -58,7 +59,11 @@ func (a *Analysis) capsule(b Budget) CapsuleResult {
 		c.GradientFraction, c.PortSpacing = unresolved("1"), unresolved("m")
 	}
 	if !c.PortSpacing.Resolved && ac.Beta-b.GradientFraction.Expanded >= leastGradient {
-		c.PortSpacing.UpperLimit = a.upperSpacing()
+		_, c.PortSpacing.UpperLimit = a.limits(true)
+	}
+	if !c.GradientFraction.Resolved && best.Status.Good() {
+		below, above := a.limits(false)
+		c.GradientFraction.LowerLimit, c.GradientFraction.UpperLimit = telling(below), telling(above)
 	}
 	if v := c.GradientFraction; v.Resolved {
 		c.Pattern = NearestPattern(*v.Value)
@@ -68,6 +73,14 @@ func (a *Analysis) capsule(b Budget) CapsuleResult {
 		}
 	}
 	return c
+}
+
+// telling is a limit of the mix where it says something.
+func telling(limit *float64) *float64 {
+	if limit == nil || *limit <= 0 || *limit >= 1 {
+		return nil
+	}
+	return limit
 }
 
 // root is the root of the sum of squares.
@@ -115,6 +128,10 @@ func (a *Analysis) warnings(r *Result) []measure.Warning {
 		add("model-does-not-hold", fmt.Sprintf("responses differ from the model by %.0f %%; the ± are widened to match", 100*x),
 			"look at the residuals: a reflection nearby, a source too large, or a capsule that is not first order")
 	}
+	if least, most, yes := varies(r.Octaves); yes {
+		add("mix-varies", fmt.Sprintf("the mix goes from %s to %s: one number does not describe this capsule", octaveWords(least), octaveWords(most)),
+			"look at the mix by octave: a leak, a second diaphragm or a network may change the pattern with frequency")
+	}
 	for _, j := range a.equals()[1:] {
 		if a.delta(j) < tie && j.Model.Form != a.Best().Model.Form {
 			add("form-not-told", fmt.Sprintf("%v fits as well as %v; the difference is part of the ±", j.Model, a.Best().Model),
@@ -123,6 +140,12 @@ func (a *Analysis) warnings(r *Result) []measure.Warning {
 		}
 	}
 	return out
+}
+
+// octaveWords is a mix with its ± and where it was found.
+func octaveWords(o OctaveMix) string {
+	v := o.GradientFraction
+	return fmt.Sprintf("%.2f ± %.2f around %.0f Hz", *v.Value, math.Max(*v.Expanded, 0.01), math.Sqrt(o.From*o.To))
 }
 
 func (a *Analysis) whyNoSpacing(c CapsuleResult) string {

@@ -29,6 +29,8 @@ type Result struct {
 	Fit       FitSummary        `json:"fit"`
 	Models    []Candidate       `json:"models"` // what was compared, best first
 	Budget    Budget            `json:"budget"`
+	Profiles  Profiles          `json:"profiles"`
+	Octaves   []OctaveMix       `json:"mix_by_octave"`
 	RiseTable RiseTable         `json:"rise_table"`
 	Warnings  []measure.Warning `json:"warnings"`
 }

@@ -26,9 +26,11 @@ type separable struct {
 	model Model
 	at    layout
 	sigma [][]float64 // [point][frequency], of one quadrature
+	nodes []int       // rings of the source for each point: the same whatever x is
 
 	// Filled by evaluate, for the last x.
 	h     [][]complex128 // [point][frequency], divided by sigma
+	sound [][]entries    // what h is mixed of
 	s     []complex128   // far response
 	power []float64      // Σ|h|²
 }
@@ -43,19 +45,21 @@ func newSeparable(d *Dataset, m Model) *separable {
 	if d.FreeClock {
 		p.at.n += n - 1 // the first response's delay is part of S
 	}
-	p.sigma = make([][]float64, n)
-	p.h = make([][]complex128, n)
-	for i := range d.Points {
-		p.sigma[i] = make([]float64, len(d.Hz))
+	p.sigma, p.h, p.sound = make([][]float64, n), p.grid(), make([][]entries, n)
+	for i, pt := range d.Points {
+		p.sigma[i], p.sound[i] = make([]float64, len(d.Hz)), make([]entries, len(d.Hz))
 		for j := range d.Hz {
 			p.sigma[i][j] = math.Sqrt(d.variance(i, j) / 2)
 		}
-		p.h[i] = make([]complex128, len(d.Hz))
+		p.nodes = append(p.nodes, nodesFor(pt.Nominal+d.Setback-typicalBody, d.Radius))
 	}
 	p.s = make([]complex128, len(d.Hz))
 	p.power = make([]float64, len(d.Hz))
 	return p
 }
+
+// typicalBody is how far a capsule reaches from its centre to its front, m.
+const typicalBody = 0.009
 
 func (p *separable) acoustics(x []float64) Acoustics {
 	return Acoustics{Beta: x[p.at.beta], Spacing: x[p.at.spacing], Radius: x[p.at.radius], Speed: x[p.at.speed]}
@@ -74,24 +78,52 @@ func (p *separable) delayOf(x []float64, i int) float64 {
 	return x[p.at.delay+i-1]
 }
 
-// fill computes h for x.
-func (p *separable) fill(h [][]complex128, x []float64) {
+// fill computes h for x; sound is where its pressures go, nil for nowhere.
+func (p *separable) fill(h [][]complex128, sound [][]entries, x []float64) {
 	e := newEvaluator(p.model, p.acoustics(x), p.data.Hz)
 	for i := range p.data.Points {
-		r, t := p.distance(x, i), p.delayOf(x, i)
-		for j, f := range p.data.Hz {
-			v := scaled(e.output(j, r), 1/p.sigma[i][j])
-			if t != 0 {
-				v *= cmplx.Rect(1, -2*math.Pi*f*t)
+		r := p.distance(x, i)
+		for j := range p.data.Hz {
+			s := e.entries(j, r, p.nodes[i])
+			if sound != nil {
+				sound[i][j] = s
 			}
-			h[i][j] = v
+			h[i][j] = scaled(e.mix(j, s), 1/p.sigma[i][j])
+		}
+	}
+	p.delayed(h, x)
+}
+
+// remix computes h for an x that differs from the last one evaluated in its mix only.
+func (p *separable) remix(h [][]complex128, x []float64) {
+	e := newMixer(p.model, p.acoustics(x), p.data.Hz)
+	for i := range p.data.Points {
+		for j := range p.data.Hz {
+			h[i][j] = scaled(e.mix(j, p.sound[i][j]), 1/p.sigma[i][j])
+		}
+	}
+	p.delayed(h, x)
+}
+
+// delayed gives each response of a free clock its delay.
+func (p *separable) delayed(h [][]complex128, x []float64) {
+	for i := range h {
+		if t := p.delayOf(x, i); t != 0 {
+			for j, f := range p.data.Hz {
+				h[i][j] *= cmplx.Rect(1, -2*math.Pi*f*t)
+			}
 		}
 	}
 }
 
 // evaluate fills h, s and power.
 func (p *separable) evaluate(x []float64) {
-	p.fill(p.h, x)
+	p.fill(p.h, p.sound, x)
+	p.eliminate()
+}
+
+// eliminate gives S its least-squares value for the h that is there.
+func (p *separable) eliminate() {
 	for j := range p.data.Hz {
 		var top complex128
 		var power float64
@@ -111,6 +143,11 @@ func (p *separable) size() int { return p.observations() + 3 + len(p.data.Points
 
 func (p *separable) residuals(dst, x []float64) {
 	p.evaluate(x)
+	p.compare(dst, x)
+}
+
+// compare fills dst for the h and S that are there.
+func (p *separable) compare(dst, x []float64) {
 	at := 0
 	for i, pt := range p.data.Points {
 		for j := range p.data.Hz {
@@ -159,7 +196,11 @@ func (p *separable) derivative(x []float64, param int, step float64) [][]complex
 	plus := p.grid()
 	y := append([]float64(nil), x...)
 	y[param] += step
-	p.fill(plus, y)
+	if param == p.at.beta {
+		p.remix(plus, y)
+	} else {
+		p.fill(plus, nil, y)
+	}
 	for i := range plus {
 		for j := range plus[i] {
 			plus[i][j] = scaled(plus[i][j]-p.h[i][j], 1/step)
@@ -280,7 +321,7 @@ func (p *separable) settleDelays(x []float64) {
 	if !p.data.FreeClock {
 		return
 	}
-	p.fill(p.h, x)
+	p.fill(p.h, nil, x)
 	first := p.data.Points[0]
 	for i := 1; i < len(p.data.Points); i++ {
 		ratio := make([]complex128, len(p.data.Hz))

@@ -36,11 +36,7 @@ func standard(u float64) BudgetSum {
 // 0 to 1, the value reported lies within.
 func mixValue(beta float64, u BudgetSum) Value {
 	if !(u.Expanded < widestMix) || u.Standard == 0 {
-		v := unresolved("1")
-		if upper := beta + 1.645*u.Standard; u.Standard > 0 && upper < 1 {
-			v.UpperLimit = ptr(math.Max(upper, 0))
-		}
-		return v
+		return unresolved("1")
 	}
 	return u.of(math.Min(math.Max(beta, 0), 1), "1")
 }
@@ -53,37 +49,4 @@ func spacingValue(d float64, u BudgetSum, leastMix float64, atBound bool) Value 
 		return unresolved("m")
 	}
 	return u.of(d, "m")
-}
-
-// upperSpacing is the one-sided 95 % limit of the spacing by its profile
-// likelihood: the largest d at which the misfit, everything else fitted again,
-// has risen by less than 2.71 in units of the reduced chi-square. nil when the
-// data exclude no spacing that the distances allow.
-func (a *Analysis) upperSpacing() *float64 {
-	best := a.Best()
-	p := newSeparable(a.Data, best.Model)
-	_, upper := p.bounds()
-	limit := 2.71 * unit(best)
-	lowest := math.Inf(1)
-	last := math.NaN()
-	previous := 0.0
-	x := append([]float64(nil), best.x...)
-	for d := smallestSpacing; d < upper[p.at.spacing]; d *= 1.3 {
-		problem := p.problem()
-		problem.Lower[p.at.spacing], problem.Upper[p.at.spacing] = d, d
-		x[p.at.spacing] = d
-		r, err := solve(p, problem, x)
-		if err != nil {
-			return nil
-		}
-		excess := 2 * r.Cost
-		lowest = math.Min(lowest, excess)
-		if excess > lowest+limit && d > best.Acoustics.Spacing {
-			// Between the two last: by the square root, which is linear near the minimum.
-			t := (math.Sqrt(limit) - previous) / (math.Sqrt(excess-lowest) - previous)
-			return ptr(last * math.Pow(d/last, math.Min(math.Max(t, 0), 1)))
-		}
-		last, previous = d, math.Sqrt(math.Max(excess-lowest, 0))
-	}
-	return nil
 }
