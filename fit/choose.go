@@ -49,11 +49,22 @@ func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Ana
 	return a, nil
 }
 
-// Guess is Analyse without its refinements: for a first look at the rise.
+// Guess is Analyse without its refinements: for a first look at the rise. Models
+// that before has and that are not among those asked for come along untried, after
+// the others, for later starts.
 func Guess(d *Dataset, models []Model, before *Analysis) (*Analysis, error) {
 	guessed := *d
 	guessed.Unexplained = firstUnexplained
-	return analyse(&guessed, models, "", before)
+	a, err := analyse(&guessed, models, "", before)
+	if err != nil || before == nil {
+		return a, err
+	}
+	for _, j := range before.Candidates {
+		if a.find(j.Model) == nil {
+			a.Candidates = append(a.Candidates, j)
+		}
+	}
+	return a, nil
 }
 
 // explainedBy is the dataset with what a fit leaves over.

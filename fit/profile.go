@@ -2,6 +2,7 @@ package fit
 
 import (
 	"math"
+	"sync"
 
 	"standoff/fit/lsq"
 )
@@ -30,16 +31,22 @@ func (a *Analysis) profiles() Profiles {
 	best := a.Best()
 	p := newSeparable(a.Data, best.Model)
 	lower, upper := p.bounds()
-	return Profiles{
-		GradientFraction: best.profile(p.at.beta, best.BetaSE, math.Max(lower[p.at.beta], -0.1), math.Min(upper[p.at.beta], 1.1)),
-		PortSpacing:      best.profile(p.at.spacing, best.SpacingSE, lower[p.at.spacing], upper[p.at.spacing]),
-	}
+	var out Profiles
+	var wg sync.WaitGroup
+	wg.Go(func() {
+		out.GradientFraction = best.profile(p.at.beta, best.BetaSE, math.Max(lower[p.at.beta], -0.1), math.Min(upper[p.at.beta], 1.1))
+	})
+	wg.Go(func() {
+		out.PortSpacing = best.profile(p.at.spacing, best.SpacingSE, lower[p.at.spacing], upper[p.at.spacing])
+	})
+	wg.Wait()
+	return out
 }
 
 // A profile goes profileSteps to either side, up to profileReach standard errors,
 // or to the bounds where there is no standard error or the data hold next to nothing.
 const (
-	profileSteps = 8
+	profileSteps = 6
 	profileReach = 3.5
 )
 

@@ -6,6 +6,7 @@ import (
 	"math"
 	"runtime"
 	"slices"
+	"sync"
 
 	"standoff/fit"
 	"standoff/measure"
@@ -351,20 +352,24 @@ func (a *analysed) spectra(hz []float64, clock string) {
 
 // averages gates, transforms and averages the takes of every group on a grid.
 func (a *analysed) averages(hz []float64, clock string) []measure.Spectrum {
-	var out []measure.Spectrum
+	out := make([]measure.Spectrum, len(a.groups))
 	zero := a.zeros(clock)
 	after := a.arrivalAfter(zero)
+	var wg sync.WaitGroup
 	for i, g := range a.groups {
-		var repeats []measure.Spectrum
-		for n, h := range g.takes {
-			ir := &h.analysis.Impulse
-			if g.travel > 0 {
-				ir = ir.ArrivingAt(zero[i][n] + g.travel*ir.Rate + after)
+		wg.Go(func() {
+			var repeats []measure.Spectrum
+			for n, h := range g.takes {
+				ir := &h.analysis.Impulse
+				if g.travel > 0 {
+					ir = ir.ArrivingAt(zero[i][n] + g.travel*ir.Rate + after)
+				}
+				repeats = append(repeats, ir.Spectrum(a.gate, g.rise, zero[i][n], hz))
 			}
-			repeats = append(repeats, ir.Spectrum(a.gate, g.rise, zero[i][n], hz))
-		}
-		out = append(out, measure.Average(repeats))
+			out[i] = measure.Average(repeats)
+		})
 	}
+	wg.Wait()
 	return out
 }
 
