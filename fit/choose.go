@@ -15,6 +15,7 @@ type Analysis struct {
 	Data       *Dataset
 	Candidates []*Joint
 	Claimed    string
+	Band       string // why the data end where they do
 	lower      *Joint // the chosen model on the lower half of the band; nil where that is too little
 }
 
@@ -36,6 +37,12 @@ func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Ana
 	if err != nil {
 		return nil, err
 	}
+	cut, why := a.Data.byMisfit(a.Best())
+	if len(cut.Hz) < len(a.Data.Hz) {
+		if a, err = analyse(cut, models, claimed, a); err != nil {
+			return nil, err
+		}
+	}
 	left := a.Data.explainedBy(a.Best())
 	if j, err := fitModel(left, a.Best().Model, a.Best()); err == nil {
 		left = left.explainedBy(j)
@@ -43,6 +50,7 @@ func Analyse(d *Dataset, models []Model, claimed string, before *Analysis) (*Ana
 	if a, err = analyse(left, models, claimed, a); err != nil {
 		return nil, err
 	}
+	a.Band = why
 	if half := left.below(left.Hz[len(left.Hz)-1] / 2); len(half.Hz) >= 6 {
 		a.lower, _ = fitModel(half, a.Best().Model, a.Best())
 	}
@@ -214,15 +222,21 @@ func (a *Analysis) formUncertainty(of func(*Joint) float64) float64 {
 
 // bandUncertainty is the standard uncertainty of a quantity from the choice of the
 // band: by how much the lower half of the band disagrees with the whole, beyond
-// what it is less certain by. A model that holds gives next to nothing; one that
-// holds nowhere quite gives another answer in every band.
+// what it is less certain by, when that is more than chance does (two standard
+// deviations). A model that holds gives nothing; one that holds nowhere quite gives
+// another answer in every band.
 func (a *Analysis) bandUncertainty(of, se func(*Joint) float64) float64 {
 	if a.lower == nil || !a.lower.Status.Good() {
 		return 0
 	}
-	off := of(a.lower) - of(a.Best())
-	wider, whole := se(a.lower), se(a.Best())
-	return math.Sqrt(math.Max(off*off-math.Max(wider*wider-whole*whole, 0), 0) / 3)
+	off := square(of(a.lower) - of(a.Best()))
+	// What uses part of the data differs by chance with the difference of variances
+	// (J. A. Hausman, Econometrica 46, 1251 (1978)).
+	chance := math.Max(square(se(a.lower))-square(se(a.Best())), 0)
+	if off <= 4*chance {
+		return 0
+	}
+	return math.Sqrt((off - chance) / 3)
 }
 
 func (a *Analysis) candidates() []Candidate {

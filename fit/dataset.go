@@ -30,6 +30,7 @@ type Dataset struct {
 	MethodMix, MethodSpacing float64
 
 	level   []float64 // |S·Far| on Hz, for Room; nil is none
+	louder  int       // 1 + the point whose gain is free; 0 is none
 	inflate float64   // of all variances; 0 is 1
 }
 

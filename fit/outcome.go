@@ -16,7 +16,7 @@ func (a *Analysis) Result() *Result {
 	r.Fit = FitSummary{
 		From: a.Data.Hz[0], To: a.Data.Hz[len(a.Data.Hz)-1],
 		ReducedChiSquare: best.ReducedChiSquare(), Points: len(a.Data.Hz) * len(a.Data.Points),
-		Unexplained: a.Data.Unexplained, Room: a.Data.Room, Alike: best.Alike, DegreesOfFreedom: best.Freedom, Status: best.Status.String(), Clock: measure.ClockCommon,
+		BandReason: a.Band, Unexplained: a.Data.Unexplained, Room: a.Data.Room, Alike: best.Alike, DegreesOfFreedom: best.Freedom, Status: best.Status.String(), Clock: measure.ClockCommon,
 		SpeedOfSound: best.Acoustics.Speed, SpeedExpanded: Coverage * best.SpeedSE,
 	}
 	if a.Data.FreeClock {

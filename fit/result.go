@@ -85,6 +85,7 @@ type TakeResult struct {
 type FitSummary struct {
 	From             float64 `json:"from_hz"`
 	To               float64 `json:"to_hz"`
+	BandReason       string  `json:"band_reason"` // why it ends where it does
 	ReducedChiSquare float64 `json:"reduced_chi_square"`
 	Unexplained      float64 `json:"unexplained"` // besides noise, relative, standard
 	Room             float64 `json:"room_1_m"`    // what reflections leave, the far response at 1 m being 1

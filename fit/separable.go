@@ -36,7 +36,7 @@ type separable struct {
 }
 
 // layout says where each parameter is in the vector.
-type layout struct{ beta, spacing, setback, radius, speed, tape, delay, n int }
+type layout struct{ beta, spacing, setback, radius, speed, tape, delay, gain, n int }
 
 func newSeparable(d *Dataset, m Model) *separable {
 	p := &separable{data: d, model: m}
@@ -44,6 +44,10 @@ func newSeparable(d *Dataset, m Model) *separable {
 	p.at = layout{beta: 0, spacing: 1, setback: 2, radius: 3, speed: 4, tape: 5, delay: 5 + n, n: 5 + n}
 	if d.FreeClock {
 		p.at.n += n - 1 // the first response's delay is part of S
+	}
+	if p.at.gain = -1; d.louder > 0 {
+		p.at.gain = p.at.n
+		p.at.n++
 	}
 	p.sigma, p.h, p.sound = make([][]float64, n), p.grid(), make([][]entries, n)
 	for i, pt := range d.Points {
@@ -91,7 +95,7 @@ func (p *separable) fill(h [][]complex128, sound [][]entries, x []float64) {
 			h[i][j] = scaled(e.mix(j, s), 1/p.sigma[i][j])
 		}
 	}
-	p.delayed(h, x)
+	p.altered(h, x)
 }
 
 // remix computes h for an x that differs from the last one evaluated in its mix only.
@@ -102,11 +106,17 @@ func (p *separable) remix(h [][]complex128, x []float64) {
 			h[i][j] = scaled(e.mix(j, p.sound[i][j]), 1/p.sigma[i][j])
 		}
 	}
-	p.delayed(h, x)
+	p.altered(h, x)
 }
 
-// delayed gives each response of a free clock its delay.
-func (p *separable) delayed(h [][]complex128, x []float64) {
+// altered gives each response of a free clock its delay, and one whose gain is free
+// its gain.
+func (p *separable) altered(h [][]complex128, x []float64) {
+	if p.at.gain >= 0 {
+		for j, v := range h[p.data.louder-1] {
+			h[p.data.louder-1][j] = scaled(v, x[p.at.gain])
+		}
+	}
 	for i := range h {
 		if t := p.delayOf(x, i); t != 0 {
 			for j, f := range p.data.Hz {
@@ -181,6 +191,13 @@ func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	}
 	if p.data.FreeClock {
 		p.delays(dst)
+	}
+	if p.at.gain >= 0 {
+		g, i := p.grid(), p.data.louder-1
+		for j, v := range p.h[i] {
+			g[i][j] = scaled(v, 1/x[p.at.gain])
+		}
+		p.project(dst, p.at.gain, g, i)
 	}
 	at, d := p.observations(), p.data
 	dst.Set(at, p.at.setback, 1/d.SetbackUncertainty)
@@ -297,6 +314,9 @@ func (p *separable) start(beta, spacing float64) []float64 {
 	d := p.data
 	x[p.at.beta], x[p.at.spacing] = beta, spacing
 	x[p.at.setback], x[p.at.radius], x[p.at.speed] = d.Setback, d.Radius, d.Speed
+	if p.at.gain >= 0 {
+		x[p.at.gain] = 1
+	}
 	return x
 }
 
@@ -310,6 +330,9 @@ func (p *separable) scale() []float64 {
 	s[p.at.setback], s[p.at.radius], s[p.at.speed] = d.SetbackUncertainty, d.RadiusUncertainty, d.SpeedUncertainty
 	for i, pt := range d.Points {
 		s[p.at.tape+i] = pt.Tape
+	}
+	if p.at.gain >= 0 {
+		s[p.at.gain] = 1
 	}
 	return s
 }

@@ -55,10 +55,12 @@ func (b Bench) offsets(takes []Placed) []float64 {
 	return out
 }
 
-// Tolerances of the comparison. Near the source the rise itself shifts the
-// envelope of the direct sound by some millimetres.
+// Tolerances of the comparison, which is for gross errors: the fit tells finer ones
+// (fit.FindOdd). Near the source the rise itself shifts the envelope of the direct
+// sound by some millimetres, far from it a reflection that comes soon after.
 const (
 	arrivalSlack = 0.008 // m
+	arrivalShare = 0.005 // of the distance
 	arrivalTapes = 5     // standard uncertainties of the tape
 	levelSlack   = 1.26  // factor, 2 dB
 )
@@ -83,19 +85,31 @@ func (b Bench) Compare(takes []Placed) [][]Finding {
 	for i, t := range takes {
 		nominal := t.Distance.Metres
 		away := (offsets[i] - typical) * b.SpeedOfSound
-		if clock == ClockCommon && math.Abs(away) > arrivalSlack+arrivalTapes*b.Tape {
+		if clock == ClockCommon && math.Abs(away) > arrivalSlack+arrivalShare*nominal+arrivalTapes*b.Tape {
 			out[i] = append(out[i], Finding{DistanceMismatch, fmt.Sprintf(
 				"sounds like %.0f mm, the rig says %.0f mm: put it right and measure again", 1e3*(nominal+away), 1e3*nominal)})
 			continue
 		}
 		ratio := products[i] / level
 		slack := levelSlack * (1 + arrivalTapes*b.Tape/(nominal+b.Setback))
-		if ratio > slack || ratio < 1/slack {
+		if ratio > slack*gradientRise((nominal+b.Setback)/b.SpeedOfSound) || ratio < 1/slack {
 			out[i] = append(out[i], Finding{LevelJump, fmt.Sprintf(
 				"%+.1f dB against the other distances: has a gain been touched, or the stand moved?", 20*math.Log10(ratio))})
 		}
 	}
 	return out
+}
+
+// gradientRise is the most by which a near-field rise can lift the rms level from 1
+// to 6 kHz: that of a pure gradient, |1 + 1/(jkr)|, t = r/c away.
+func gradientRise(t float64) float64 {
+	var sum float64
+	hz := logGrid(arrivalBand[0], arrivalBand[1], 16)
+	for _, f := range hz {
+		kr := 2 * math.Pi * f * t
+		sum += (1 + 1/(kr*kr)) / float64(len(hz))
+	}
+	return math.Sqrt(sum)
 }
 
 func countPlaces(takes []Placed) int {

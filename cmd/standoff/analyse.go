@@ -46,7 +46,12 @@ type group struct {
 	rise     measure.Rise // by which it is made compact for the gate
 	travel   float64      // of the direct sound to it after time zero as fitted, s; 0 before
 	average  measure.Spectrum
+	odd      *fit.Odd // when it does not belong to the others
 }
+
+// used reports whether a group takes part in the fit: one whose place is odd does,
+// with its place free.
+func (g group) used() bool { return g.odd == nil || g.odd.Moved }
 
 // analyse is the chain from a folder's recordings to the result; it writes the
 // verdicts on the takes back to the manifest.
@@ -282,8 +287,28 @@ func (a *analysed) fitAll(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
+	if first, err = a.withoutOdd(ctx, hz, clock, first); err != nil {
+		return err
+	}
 	a.fit, err = fit.Analyse(a.dataset(hz, clock), models(a.rig), a.rig.Unit.Claimed, first)
 	return err
+}
+
+// withoutOdd looks for distances that do not belong and, where there are some, makes
+// the first look again without their errors.
+func (a *analysed) withoutOdd(ctx context.Context, hz []float64, clock string, first *fit.Analysis) (*fit.Analysis, error) {
+	odd, err := fit.FindOdd(a.dataset(hz, clock), first)
+	if err != nil || len(odd) == 0 {
+		return first, err
+	}
+	for i := range a.groups {
+		for _, o := range odd {
+			if o.Label == a.groups[i].distance.Label {
+				a.groups[i].odd = &o
+			}
+		}
+	}
+	return a.compacted(ctx, hz, clock)
 }
 
 // compacted finds the rise by which responses are divided before they are gated.
@@ -303,10 +328,7 @@ func (a *analysed) compacted(ctx context.Context, hz []float64, clock string) (*
 			return nil, err
 		}
 		best := now.Best()
-		for i := range a.groups {
-			a.groups[i].rise = best.Model.RiseForGate(best.Acoustics, best.Distances[i])
-			a.groups[i].travel = best.Model.Travel(best.Acoustics, best.Distances[i]) + best.Delays[i]
-		}
+		a.expect(best)
 		still := before != nil && before.Best().Model == best.Model && best.Acoustics.Near(before.Best().Acoustics)
 		before, tried = now, []fit.Model{best.Model}
 		if still {
@@ -315,6 +337,22 @@ func (a *analysed) compacted(ctx context.Context, hz []float64, clock string) (*
 	}
 	a.spectra(hz, clock)
 	return before, nil
+}
+
+// expect gives every group the rise and the travel that a fit says. One that was left
+// out stands where the rig has it.
+func (a *analysed) expect(j *fit.Joint) {
+	n := 0
+	for i := range a.groups {
+		g := &a.groups[i]
+		r, delay := g.distance.Metres+j.Setback, 0.0
+		if g.used() {
+			r, delay = j.Distances[n], j.Delays[n]
+			n++
+		}
+		g.rise = j.Model.RiseForGate(j.Acoustics, r)
+		g.travel = j.Model.Travel(j.Acoustics, r) + delay
+	}
 }
 
 // mostRounds is how often gate and fit follow each other at most.
@@ -437,8 +475,14 @@ func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 		d.Radius, d.RadiusUncertainty = 0, 1e-3
 	}
 	for _, g := range a.groups {
+		if !g.used() {
+			continue
+		}
 		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty,
 			Value: g.average.Value, Variance: g.average.Variance}
+		if g.odd != nil {
+			p.Tape = freePlace
+		}
 		d.Points = append(d.Points, p)
 	}
 	return d
@@ -452,6 +496,9 @@ const (
 	methodMix     = 0.001
 	methodSpacing = 0.004 // relative
 )
+
+// freePlace is the uncertainty in m of a place that the rig has wrong.
+const freePlace = 0.3
 
 // models are those that the rig allows.
 func models(r *rig.Rig) []fit.Model {

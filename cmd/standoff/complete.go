@@ -9,6 +9,7 @@ import (
 
 	"standoff/fit"
 	"standoff/measure"
+	"standoff/report/number"
 )
 
 // complete adds to the fit's result what only the takes know.
@@ -25,6 +26,7 @@ func (a *analysed) complete(version string) {
 		})
 	}
 	r.Distances = a.allDistances(r.Distances)
+	r.Warnings = append(r.Warnings, a.oddWarnings()...)
 	r.Warnings = append(r.Warnings, a.placeWarnings()...)
 	r.Warnings = append(r.Warnings, a.takeWarnings()...)
 	a.result = r
@@ -69,6 +71,39 @@ func (a *analysed) flagsAt(label string, used bool) []measure.Flag {
 			if !slices.Contains(out, f) {
 				out = append(out, f)
 			}
+		}
+	}
+	for _, g := range a.groups {
+		if g.distance.Label == label && g.odd != nil {
+			out = append(out, oddFlag(g.odd))
+		}
+	}
+	return out
+}
+
+func oddFlag(o *fit.Odd) measure.Flag {
+	if o.Moved {
+		return measure.DistanceMismatch
+	}
+	return measure.LevelJump
+}
+
+// oddWarnings name distances that do not belong to the others, and what they
+// probably are.
+func (a *analysed) oddWarnings() []measure.Warning {
+	out := []measure.Warning{}
+	for _, g := range a.groups {
+		switch o := g.odd; {
+		case o == nil:
+		case o.Moved:
+			out = append(out, measure.Warning{Code: string(measure.DistanceMismatch),
+				Text: fmt.Sprintf("%s sounds like %s, k = 2; the rig says %s: fitted with its place free", o.Label,
+					number.PlusMinus(1e3*o.Sounds, 1e3*math.Max(fit.Coverage*o.SoundsSE, 1e-4), "mm"), number.Length(g.distance.Metres)),
+				Hint: "was the stand moved, or the tape misread? measure this distance again"})
+		default:
+			out = append(out, measure.Warning{Code: string(measure.LevelJump),
+				Text: fmt.Sprintf("%s is %s dB against what its distance explains: left out", o.Label, number.Signed(dB(math.Abs(o.Gain)), 1)),
+				Hint: "has a gain been touched? measure this distance again"})
 		}
 	}
 	return out

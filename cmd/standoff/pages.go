@@ -51,7 +51,7 @@ func (a *analysed) displayGrid() []float64 {
 // response is the gated average at one distance, in dB relative to a wire from
 // output to input.
 func (a *analysed) response(g group, spec measure.Spectrum) report.Response {
-	out := report.Response{Label: g.distance.Label, Metres: g.distance.Metres, Used: true, Hz: spec.Hz}
+	out := report.Response{Label: g.distance.Label, Metres: g.distance.Metres, Used: g.used(), Hz: spec.Hz}
 	for j, v := range spec.Value {
 		level := math.Max(cmplx.Abs(v), 1e-12)
 		out.DB = append(out.DB, dB(level))
@@ -71,7 +71,7 @@ const (
 func (a *analysed) impulse(g group) report.Impulse {
 	mean, arrival := a.meanImpulse(g)
 	rate := float64(a.exc.Rate)
-	out := report.Impulse{Label: g.distance.Label, Metres: g.distance.Metres, Used: true,
+	out := report.Impulse{Label: g.distance.Label, Metres: g.distance.Metres, Used: g.used(),
 		GateFrom: -a.gate.Lead / 2, GateTo: a.gate.Length}
 	from := max(int(arrival-showBefore*rate), 0)
 	to := min(int(arrival+math.Max(showAfter, 1.6*a.gate.Length)*rate), len(mean))
