@@ -128,6 +128,9 @@ func (a *Analysis) warnings(r *Result) []measure.Warning {
 		add("model-does-not-hold", fmt.Sprintf("responses differ from the model by %.0f %%; the ± are widened to match", 100*x),
 			"look at the residuals: a reflection nearby, a source too large, or a capsule that is not first order")
 	}
+	if w := a.sourceWarning(); w != nil {
+		out = append(out, *w)
+	}
 	if least, most, yes := varies(r.Octaves); yes {
 		add("mix-varies", fmt.Sprintf("the mix goes from %s to %s: one number does not describe this capsule", octaveWords(least), octaveWords(most)),
 			"look at the mix by octave: a leak, a second diaphragm or a network may change the pattern with frequency")
