@@ -161,16 +161,35 @@ func crossingAt(p Profile, inside, outside int, excess float64) float64 {
 	return p.Value[inside] + t*(p.Value[outside]-p.Value[inside])
 }
 
-// limits are the one-sided 95 % limits of a parameter that is not resolved, over
-// all that its bounds allow; nil where the data exclude nothing.
+// limits are the one-sided 95 % limits of a parameter that is not resolved, over all
+// that its bounds allow; nil where the data exclude nothing. Of the models that the
+// data cannot refuse the widest counts.
 func (a *Analysis) limits(spacing bool) (below, above *float64) {
-	best := a.Best()
-	p := newSeparable(a.Data, best.Model)
-	lower, upper := p.bounds()
-	param := p.at.beta
-	if spacing {
-		param = p.at.spacing
+	for i, j := range a.equals() {
+		p := newSeparable(a.Data, j.Model)
+		lower, upper := p.bounds()
+		param := p.at.beta
+		if spacing {
+			param = p.at.spacing
+		}
+		wide := j.profile(param, 0, lower[param], upper[param])
+		b, t := wide.below(oneSided), wide.above(oneSided)
+		if i == 0 {
+			below, above = b, t
+			continue
+		}
+		below, above = widest(below, b, -1), widest(above, t, 1)
 	}
-	wide := best.profile(param, 0, lower[param], upper[param])
-	return wide.below(oneSided), wide.above(oneSided)
+	return below, above
+}
+
+// widest of two limits, nil being no limit; towards −1 the lower.
+func widest(a, b *float64, towards float64) *float64 {
+	if a == nil || b == nil {
+		return nil
+	}
+	if (*b-*a)*towards > 0 {
+		return b
+	}
+	return a
 }
