@@ -40,21 +40,28 @@ func FixedGate(length float64) Gate {
 	return Gate{Lead: gateLead, Length: length, Fall: gateFall * length, Reason: "set by the rig"}
 }
 
-// ChooseGate closes the gate before the first reflection that any response
-// shows, at the latest after 25 ms; when a reflection comes earlier than 3 ms
-// the gate stays at 3 ms and says so.
-func ChooseGate(responses []*ImpulseResponse, from, to float64) Gate {
-	first := math.Inf(1)
+// ChooseGate closes the gate before the first reflection that any response shows.
+// Without one it closes when the last response has died away, or sunk into its noise,
+// but not before two periods of the lowest frequency wanted fit in; at the latest
+// after 25 ms. When a reflection comes earlier than 3 ms the gate stays at 3 ms and
+// says so. from and to are the excitation's band, Hz.
+func ChooseGate(responses []*ImpulseResponse, from, to, lowest float64) Gate {
+	first, faded := math.Inf(1), 0.0
 	for _, ir := range responses {
-		first = math.Min(first, firstReflection(ir, from, to))
+		reflection, end := lookAfter(ir, from, to)
+		first, faded = math.Min(first, reflection), math.Max(faded, end)
 	}
 	first = math.Floor(first*1e4) / 1e4
 	length, reason := longestGate, "no reflection within 25 ms"
+	enough := math.Ceil(math.Max(faded, 2/lowest)*1e3) / 1e3
 	switch {
 	case first < shortestGate:
 		length, reason = shortestGate, fmt.Sprintf("a reflection %.1f ms after the direct sound is inside the shortest gate", first*1e3)
-	case first < longestGate:
+	case first < math.Min(enough, longestGate):
 		length, reason = first, fmt.Sprintf("first reflection %.1f ms after the direct sound", first*1e3)
+	case enough < longestGate:
+		length = math.Max(enough, shortestGate)
+		reason = fmt.Sprintf("no reflection up to there; the sound has died away after %.1f ms, two periods of %.0f Hz fit in", faded*1e3, lowest)
 	}
 	g := FixedGate(length)
 	g.Reason = reason
@@ -65,29 +72,36 @@ func ChooseGate(responses []*ImpulseResponse, from, to float64) Gate {
 // counts as a reflection, relative to it, −32 dB.
 const reflectionLevel = 0.025
 
-// firstReflection is the time in s from the direct sound to the foot of the
-// first later maximum of the envelope that stands clear: above reflectionLevel,
-// above the noise, and at least 6 dB over the lowest point since the direct
-// sound. +Inf when there is none.
-func firstReflection(ir *ImpulseResponse, from, to float64) float64 {
+// fadedLevel is the level at which a direct sound has died away, relative to it, −54 dB.
+const fadedLevel = 0.002
+
+// lookAfter is the time in s from the direct sound to the foot of the first later
+// maximum of the envelope that stands clear: above reflectionLevel, above the noise,
+// and at least 6 dB over the lowest point since the direct sound; +Inf when there is
+// none. And to where the envelope is last above fadedLevel and the noise.
+func lookAfter(ir *ImpulseResponse, from, to float64) (reflection, faded float64) {
 	lo, hi := math.Max(arrivalBand[0], from), math.Min(1.5*arrivalBand[1], to)
 	env := dsp.Envelope(ir.Samples, ir.Rate, lo, hi)
 	at := int(ir.Arrival) - ir.First
 	if at < 0 || at >= len(env) {
-		return math.Inf(1)
+		return math.Inf(1), 0
 	}
 	main, noise := env[at], noisePeak(ir, lo, hi)
 	lowest, foot := env[at], at
+	reflection = math.Inf(1)
 	for i := at + int(0.001*ir.Rate); i < min(at+int(longestGate*1.2*ir.Rate), len(env)-1); i++ {
+		if env[i] > math.Max(fadedLevel*main, noise) {
+			faded = float64(i-at) / ir.Rate
+		}
 		if env[i] < lowest {
 			lowest, foot = env[i], i
 		}
 		peak := env[i] >= env[i-1] && env[i] > env[i+1]
 		if peak && env[i] > math.Max(reflectionLevel*main, noise) && env[i] > 2*lowest {
-			return float64(footBefore(env, i, foot)-at) / ir.Rate
+			return float64(footBefore(env, i, foot)-at) / ir.Rate, faded
 		}
 	}
-	return math.Inf(1)
+	return reflection, faded
 }
 
 // footBefore is where the envelope on the way down from its maximum at i to the

@@ -30,7 +30,7 @@ func TestChooseGate(t *testing.T) {
 		{"late", 0.5, 0.040, 0.025, 0.025},
 	} {
 		ir := scene{gain: 0.3, delay: 250.5, noise: 1e-4, echo: p.level, echoDelay: p.delay * 48000, seed: 1}.take(a).Impulse
-		g := ChooseGate([]*ImpulseResponse{&none, &ir}, 40, 20000)
+		g := ChooseGate([]*ImpulseResponse{&none, &ir}, 40, 20000, 80)
 		if g.Length < p.least || g.Length > p.most || g.Fall >= g.Length || g.Reason == "" {
 			t.Errorf("%s: a gate of %.2f ms, want %.2f to %.2f (%s)", p.name, 1e3*g.Length, 1e3*p.least, 1e3*p.most, g.Reason)
 		}
@@ -40,11 +40,25 @@ func TestChooseGate(t *testing.T) {
 	}
 }
 
+// Without a reflection the gate closes when nothing is left to wait for.
+func TestChooseGateByDecay(t *testing.T) {
+	a := testAnalyser(t)
+	ir := scene{gain: 0.3, delay: 250.5, noise: 1e-5, seed: 1}.take(a).Impulse
+	g := ChooseGate([]*ImpulseResponse{&ir}, 40, 20000, 250)
+	if g.Length != 0.008 || !strings.Contains(g.Reason, "died away") {
+		t.Errorf("a gate of %.2f ms: %s", 1e3*g.Length, g.Reason)
+	}
+	rings := scene{gain: 0.3, delay: 250.5, noise: 1e-5, echo: 0.01, echoDelay: 0.011 * 48000, seed: 1}.take(a).Impulse
+	if g := ChooseGate([]*ImpulseResponse{&rings}, 40, 20000, 250); g.Length < 0.011 || g.Length > 0.014 {
+		t.Errorf("something weak at 11 ms: a gate of %.2f ms: %s", 1e3*g.Length, g.Reason)
+	}
+}
+
 // A near-field rise is no reflection.
 func TestChooseGateIgnoresTheRise(t *testing.T) {
 	a := testAnalyser(t)
 	ir := scene{gain: 0.05, delay: 250.5, noise: 1e-5, w: 6000, highPass: 70}.take(a).Impulse
-	if g := ChooseGate([]*ImpulseResponse{&ir}, 40, 20000); g.Length != longestGate {
+	if g := ChooseGate([]*ImpulseResponse{&ir}, 40, 20000, 80); g.Length != longestGate {
 		t.Errorf("a gate of %.2f ms: %s", 1e3*g.Length, g.Reason)
 	}
 }
@@ -69,6 +83,6 @@ func TestGateBeyondTheResponse(t *testing.T) {
 				t.Errorf("arrival %g: %v", arrival, v)
 			}
 		}
-		ChooseGate([]*ImpulseResponse{ir}, 40, 20000)
+		ChooseGate([]*ImpulseResponse{ir}, 40, 20000, 80)
 	}
 }

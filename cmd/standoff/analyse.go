@@ -378,7 +378,7 @@ func (a *analysed) chooseGate() measure.Gate {
 			all = append(all, &h.analysis.Impulse)
 		}
 	}
-	return measure.ChooseGate(all, a.exc.From, a.exc.To)
+	return measure.ChooseGate(all, a.exc.From, a.exc.To, math.Max(a.rig.Fit.From, a.exc.From))
 }
 
 // spectra are the averages by which the fit goes.
