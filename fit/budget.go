@@ -116,6 +116,9 @@ func (b Budget) sum(of func(BudgetLine) float64) BudgetSum {
 		parts, freedom = append(parts, of(l)), append(freedom, float64(l.Freedom))
 	}
 	u, nu := root(parts...), effectiveFreedom(parts, freedom)
+	if nu > 1e4 {
+		nu = math.Inf(1) // as good as
+	}
 	k := coverageFactor(nu)
 	return BudgetSum{u, Freedom(nu), k, k * u}
 }
