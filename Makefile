@@ -8,7 +8,7 @@ GO ?= go
 BUILD_DEBS := gcc libc6-dev pkg-config portaudio19-dev
 TEST_DEBS  := jackd2 jconvolver sox poppler-utils python3-scipy
 
-.PHONY: demo test quick lint race bench build build-deps test-deps clean
+.PHONY: demo test quick lint race bench study build build-deps test-deps clean
 
 # ---- set-up -------------------------------------------------------------------
 
@@ -79,6 +79,10 @@ race:
 
 bench: test-deps
 	$(GO) test -tags "$(tags)" -run '^$$' -bench . -benchtime 1x ./...
+
+# Writes the tables of fit/STUDY.md anew; takes half an hour.
+study: test-deps
+	testdata/study.sh -tags "$(tags)"
 
 clean:
 	rm -rf bin demo .apt.log
