@@ -7,6 +7,7 @@ import "fmt"
 const (
 	bandWorse = 1.5
 	bandSlack = 0.0005
+	bandClear = 10.0 // in −2 ln L, by which it has to be certain
 )
 
 // fewest frequencies that a band is cut to.
@@ -22,21 +23,27 @@ func (d *Dataset) byMisfit(best *Joint) (cut *Dataset, why string) {
 	if len(least.Hz) < fewestInBand {
 		return d, "all that gate and rig leave: too few frequencies to choose among"
 	}
-	over := func(part *Dataset) float64 {
+	over := func(part *Dataset) (unexplained float64, worseThan func(float64) bool) {
 		j, err := fitModel(part, best.Model, best)
 		if err != nil {
-			return mostUnexplained
+			return mostUnexplained, func(float64) bool { return true }
 		}
-		return part.explainedBy(j).Unexplained
+		r := j.residues()
+		u, rho := leftovers(r)
+		return u, func(enough float64) bool {
+			return u > enough && unlikely(r, enough, rho)-unlikely(r, u, rho) > bandClear
+		}
 	}
-	low, whole := over(least), over(d)
+	low, _ := over(least)
+	whole, worse := over(d)
 	enough := bandWorse*low + bandSlack
-	if whole <= enough {
+	if !worse(enough) {
 		return d, fmt.Sprintf("the model leaves %s over in all of it, %s in its lower half", percent(whole), percent(low))
 	}
 	cut = least
 	for _, part := range []float64{1.26, 1.59} {
-		if c := d.below(top / part); over(c) <= enough {
+		c := d.below(top / part)
+		if _, worse := over(c); !worse(enough) {
 			cut = c
 			break
 		}

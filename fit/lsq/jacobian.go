@@ -148,6 +148,9 @@ func (s *solver) probe(j int, h float64) (r []float64, x float64, ok bool) {
 	return r, x, ok
 }
 
+// lost is the ratio of effects at which the smaller is below all rounding.
+const lost = 1e-30
+
 // dead lists the parameters whose columns are zero, or negligible when the
 // sizes of the parameters are known. Fixed ones are not asked.
 func (s *solver) dead() []bool {
@@ -159,7 +162,7 @@ func (s *solver) dead() []bool {
 		most = math.Max(most, effect[j])
 	}
 	for j := range dead {
-		none := s.norm[j] == 0 || s.set.Scale != nil && effect[j] <= negligible*most
+		none := s.norm[j] == 0 || effect[j] <= lost*most || s.set.Scale != nil && effect[j] <= negligible*most
 		dead[j] = none && !s.fixed[j]
 	}
 	return dead

@@ -72,6 +72,84 @@ var nistSets = []nistSet{
 		sd:     []float64{1.5408051163e-02, 4.6803020753e-02, 4.6800518816e-02},
 		rss:    1.4635887487e-03, rsd: 6.7629245447e-03,
 	},
+	{
+		name:  "boxbod",
+		model: func(b []float64, x float64) float64 { return b[0] * (1 - math.Exp(-b[1]*x)) },
+		grad: func(dst, b []float64, x float64) {
+			e := math.Exp(-b[1] * x)
+			dst[0], dst[1] = 1-e, b[0]*x*e
+		},
+		starts: [2][]float64{{1, 1}, {100, 0.75}},
+		value:  []float64{2.1380940889e+02, 5.4723748542e-01},
+		sd:     []float64{1.2354515176e+01, 1.0455993237e-01},
+		rss:    1.1680088766e+03, rsd: 1.7088072423e+01,
+	},
+	{
+		name:  "rat42",
+		model: func(b []float64, x float64) float64 { return b[0] / (1 + math.Exp(b[1]-b[2]*x)) },
+		grad: func(dst, b []float64, x float64) {
+			e := math.Exp(b[1] - b[2]*x)
+			dst[0] = 1 / (1 + e)
+			dst[1] = -b[0] * e / ((1 + e) * (1 + e))
+			dst[2] = -x * dst[1]
+		},
+		starts: [2][]float64{{100, 1, 0.1}, {75, 2.5, 0.07}},
+		value:  []float64{7.2462237576e+01, 2.6180768402e+00, 6.7359200066e-02},
+		sd:     []float64{1.7340283401e+00, 8.8295217536e-02, 3.4465663377e-03},
+		rss:    8.0565229338e+00, rsd: 1.1587725499e+00,
+	},
+	{
+		name:  "mgh10",
+		model: func(b []float64, x float64) float64 { return b[0] * math.Exp(b[1]/(x+b[2])) },
+		grad: func(dst, b []float64, x float64) {
+			e := math.Exp(b[1] / (x + b[2]))
+			dst[0], dst[1] = e, b[0]*e/(x+b[2])
+			dst[2] = -dst[1] * b[1] / (x + b[2])
+		},
+		starts: [2][]float64{{2, 400000, 25000}, {0.02, 4000, 250}},
+		value:  []float64{5.6096364710e-03, 6.1813463463e+03, 3.4522363462e+02},
+		sd:     []float64{1.5687892471e-04, 2.3309021107e+01, 7.8486103508e-01},
+		rss:    8.7945855171e+01, rsd: 2.6009740065e+00,
+	},
+	{
+		name: "rat43",
+		model: func(b []float64, x float64) float64 {
+			return b[0] / math.Pow(1+math.Exp(b[1]-b[2]*x), 1/b[3])
+		},
+		grad: func(dst, b []float64, x float64) {
+			e := math.Exp(b[1] - b[2]*x)
+			p := math.Pow(1+e, -1/b[3])
+			dst[0] = p
+			dst[1] = -b[0] * p * e / (b[3] * (1 + e))
+			dst[2] = -x * dst[1]
+			dst[3] = b[0] * p * math.Log(1+e) / (b[3] * b[3])
+		},
+		starts: [2][]float64{{100, 10, 1, 1}, {700, 5, 0.75, 1.3}},
+		value:  []float64{6.9964151270e+02, 5.2771253025e+00, 7.5962938329e-01, 1.2792483859e+00},
+		sd:     []float64{1.6302297817e+01, 2.0828735829e+00, 1.9566123451e-01, 6.8761936385e-01},
+		rss:    8.7864049080e+03, rsd: 2.8262414662e+01,
+	},
+	{
+		name: "thurber",
+		model: func(b []float64, x float64) float64 {
+			return (b[0] + x*(b[1]+x*(b[2]+x*b[3]))) / (1 + x*(b[4]+x*(b[5]+x*b[6])))
+		},
+		grad: func(dst, b []float64, x float64) {
+			top, bottom := b[0]+x*(b[1]+x*(b[2]+x*b[3])), 1+x*(b[4]+x*(b[5]+x*b[6]))
+			for k := range 4 {
+				dst[k] = math.Pow(x, float64(k)) / bottom
+			}
+			for k := range 3 {
+				dst[4+k] = -top * math.Pow(x, float64(k+1)) / (bottom * bottom)
+			}
+		},
+		starts: [2][]float64{{1000, 1000, 400, 40, 0.7, 0.3, 0.03}, {1300, 1500, 500, 75, 1, 0.4, 0.05}},
+		value: []float64{1.2881396800e+03, 1.4910792535e+03, 5.8323836877e+02, 7.5416644291e+01,
+			9.6629502864e-01, 3.9797285797e-01, 4.9727297349e-02},
+		sd: []float64{4.6647963344e+00, 3.9571156086e+01, 2.8698696102e+01, 5.5675370270e+00,
+			3.1333340687e-02, 1.4984928198e-02, 6.5842344623e-03},
+		rss: 5.6427082397e+03, rsd: 1.3714600784e+01,
+	},
 }
 
 func (set nistSet) problem(y, x []float64, analytic bool) lsq.Problem {

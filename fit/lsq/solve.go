@@ -85,11 +85,15 @@ func (s *solver) rescale() {
 	}
 }
 
-// resetRadius lets a step be as long as x or r is, in the metric D. Moré
-// suggests 0.1 to 100 times ‖D x‖: more than once throws MGH09 (see the NIST
-// sets) far up its valley.
+// resetRadius lets a step be as long as x is, in the metric D, or where x is next to
+// zero as long as r. Moré suggests 0.1 to 100 times ‖D x‖: more than once throws MGH09
+// far up its valley and BoxBOD onto a plain, half leaves MGH10 on its way (the NIST
+// sets).
 func (s *solver) resetRadius() {
-	s.radius = math.Max(s.length(s.x), norm(s.r))
+	s.radius = s.length(s.x)
+	if r := norm(s.r); s.radius < 1e-6*r {
+		s.radius = r
+	}
 }
 
 // length returns ‖D p‖.
