@@ -88,13 +88,13 @@ func (p *separable) carried(x []float64, c *mat.SymDense) float64 {
 	p.jacobian(j, x)
 	col := mat.NewVecDense(p.size(), mat.Col(nil, p.at.beta, j))
 	power := mat.Dot(col, col)
-	by := mat.NewVecDense(p.at.n, nil)
+	by := mat.NewDense(1, p.at.n, nil)
 	for k := range p.at.n {
 		if k != p.at.beta {
-			by.SetVec(k, -mat.Dot(col, j.ColView(k))/power)
+			by.Set(0, k, -mat.Dot(col, j.ColView(k))/power)
 		}
 	}
-	return mat.Inner(by, c, by)
+	return propagate(by, c).At(0, 0)
 }
 
 // between is the dataset from one frequency to below another.
