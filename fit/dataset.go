@@ -88,6 +88,16 @@ func (d *Dataset) variance(i, j int) float64 {
 	return math.Max(d.inflate, 1) * (d.Points[i].Variance[j] + d.leftover(i, j) + d.room(j))
 }
 
+// Variances are E|error|² of point i on Hz, everything together: noise, what is left
+// over, and the room.
+func (d *Dataset) Variances(i int) []float64 {
+	out := make([]float64, len(d.Hz))
+	for j := range out {
+		out[j] = d.variance(i, j)
+	}
+	return out
+}
+
 // leftover is the part of it that is relative to the response.
 func (d *Dataset) leftover(i, j int) float64 {
 	y := d.Points[i].Value[j]

@@ -129,7 +129,7 @@ func solveFrom(p *separable, starts [][]float64) (*lsq.Result, error) {
 }
 
 func solve(p *separable, problem lsq.Problem, x []float64) (*lsq.Result, error) {
-	r, err := lsq.Solve(problem, x, lsq.Settings{MaxIterations: 80, FTol: 1e-10, XTol: 1e-9, Scale: p.scale()})
+	r, err := lsq.Solve(problem, x, lsq.Settings{MaxIterations: 80, FTol: 1e-13, XTol: 1e-11, Scale: p.scale()})
 	if err != nil {
 		return nil, fmt.Errorf("fit of %v: %w", p.model, err)
 	}

@@ -59,7 +59,7 @@ func (s *sphereSeries) term(m int) complex128 {
 // at the other, for a ring of monopoles of radius rho in a plane at r from the
 // centre.
 func (s *sphereSeries) polePressures(r, rho float64) (front, rear complex128) {
-	const small = 1e-11
+	const small = 1e-13
 	R := math.Hypot(r, rho)
 	x, cos := s.k*R, r/R
 	turn := cmplx.Rect(1, x)
