@@ -175,7 +175,7 @@ func (d *document) footer() {
 	y := d.style.Paper.Height - footerUp
 	d.rule(y-11, st.Soft, 0.4)
 	d.font("", 7, st.Soft)
-	d.text(marginLeft, y, fmt.Sprintf("standoff %s · session %s · every ± is expanded, k = 2, about 95 %%", clean(d.data.Version), clean(d.data.Session)))
+	d.text(marginLeft, y, fmt.Sprintf("standoff %s · session %s · %s", clean(d.data.Version), clean(d.data.Session), coverage(d.data.Result)))
 	d.textRight(d.right(), y, fmt.Sprintf("page %d of %d", d.pdf.PageNo(), d.pages))
 }
 
@@ -235,8 +235,11 @@ func (d *document) wrap(s string, width float64) []string {
 	return append(lines, line)
 }
 
-// heading is a line in bold above a part of a page.
+// heading is a line in bold above a part of a page; on a full page there is none.
 func (d *document) heading(s string) {
+	if d.room() < 3*rowHeight {
+		return
+	}
 	d.y += 6
 	d.font("B", 10, d.style.Figure.Ink)
 	d.text(marginLeft, d.y+10, s)

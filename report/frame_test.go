@@ -59,6 +59,10 @@ func crowded() map[string]*Data {
 	for _, n := range []int{1, 2, 8, 30} {
 		cases[fmt.Sprint(n, " distances")] = sample(n)
 	}
+	for name, crowd := range crowdedEvidence() {
+		cases[name] = sample(8)
+		crowd(cases[name])
+	}
 	flat := sample(8)
 	for i := range flat.Curves.Rise {
 		for _, y := range [][]float64{flat.Curves.Rise[i].DB, flat.Curves.Rise[i].LineDB} {

@@ -17,7 +17,7 @@ func patternPage(d *Data, s Style) page {
 	answer := "The mix is not resolved, so no pattern can be said."
 	if known {
 		answer = fmt.Sprintf("The mix of %s makes it %s, on its axis and far from sources and walls. "+
-			"It is what the mix implies, not what a turntable would find.", value(d.Result.Capsule.GradientFraction, 1, ""), article(d.Result.Capsule.Pattern))
+			"It is what the mix implies, not what a turntable would find.", covered(d.Result.Capsule.GradientFraction, 1, ""), article(d.Result.Capsule.Pattern))
 	}
 	return page{"What pattern is it?", answer, func(doc *document) {
 		h := min(doc.width(), doc.room()-8*rowHeight-34)
@@ -71,6 +71,7 @@ func patternRows(beta, expanded float64) [][]string {
 func trustPage(d *Data, s Style) page {
 	return page{"Can these numbers be trusted?", trustAnswer(d), func(doc *document) {
 		r := d.Result
+		doc.budget()
 		doc.heading("The joint fit")
 		doc.table([]column{{"", 1.3, left}, {"", 3, left}}, fitRows(r))
 		doc.heading("Models that were tried")
@@ -87,20 +88,18 @@ func trustPage(d *Data, s Style) page {
 		}
 		doc.table([]column{{"model, body, rear", 2.5, left}, {"mix", 0.8, decimal}, {"spacing, mm", 1, decimal}, {"misfit", 0.9, decimal}, {"", 2.9, left}}, rows)
 		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained.", 7.5, s.Figure.Soft)
-		doc.heading("Each distance by itself, given the far response that the others settle")
-		doc.table([]column{{"", 1, left}, {"mix", 1.5, decimal}, {"spacing, mm", 1.5, decimal}, {"misfit in the joint fit", 1.4, decimal}}, aloneRows(r))
-		doc.paragraph("A distance that disagrees with the others shows here. A far distance tells the spacing only through the far response, which the others have settled.", 7.5, s.Figure.Soft)
-		if h := min(doc.room()-10, 190); h > 110 {
-			doc.y += 10
-			doc.figure(aloneFigure(d, s), h)
-		}
 	}}
 }
 
+// trustAnswer says what the numbers are worth, and what limits them.
 func trustAnswer(d *Data) string {
-	f := d.Result.Fit
-	return fmt.Sprintf("%s at %s, reduced chi-square %s with %s left unexplained beside the noise. %s",
-		plural(f.Points, "point", "points"), plural(used(d.Result), "distance", "distances"), misfit(f.ReducedChiSquare), number.Percent(f.Unexplained), followsSentence(d))
+	f, c := d.Result.Fit, d.Result.Capsule
+	out := []string{fmt.Sprintf("The mix is %s, the spacing %s.", covered(c.GradientFraction, 1, ""), covered(c.PortSpacing, 1000, "mm"))}
+	if text := limiting(d.Result); text != "" {
+		out = append(out, text)
+	}
+	return strings.Join(append(out, fmt.Sprintf("%s at %s: reduced chi-square %s, with %s left unexplained beside the noise.",
+		plural(f.Points, "point", "points"), plural(used(d.Result), "distance", "distances"), misfit(f.ReducedChiSquare), number.Percent(f.Unexplained))), " ")
 }
 
 // misfit writes a reduced chi-square.
@@ -117,8 +116,6 @@ func misfit(x float64) string {
 func fitRows(r *fit.Result) [][]string {
 	c, f := r.Capsule, r.Fit
 	return [][]string{
-		{"mix", value(c.GradientFraction, 1, "")},
-		{"effective port spacing", value(c.PortSpacing, 1000, "mm")},
 		{"setback of the capsule", value(c.Setback, 1000, "mm") + ", by the rig and the fit together"},
 		{"radius of the source", value(c.SourceRadius, 1000, "mm") + ", likewise"},
 		{"speed of sound", number.PlusMinus(f.SpeedOfSound, f.SpeedExpanded, "m/s")},

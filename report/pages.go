@@ -10,6 +10,7 @@ func pages(d *Data, s Style) []page {
 		impulsePage(d, s),
 		patternPage(d, s),
 		trustPage(d, s),
+		holdPage(d, s),
 		takesPage(d, s),
 	}
 }

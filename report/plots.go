@@ -30,6 +30,13 @@ func Plots(d *Data, s Style) ([]Plot, error) {
 		impulses.Lines = append(impulses.Lines, figure.Series{Label: m.Label, X: m.Seconds, Y: m.Value})
 		impulses.GateFrom, impulses.GateTo = m.GateFrom, m.GateTo
 	}
+	octaves, left := octavesFigure(d, s)
+	octaves.Note = partsNote(d, octavesCoverage(d.Result), left)
+	alone := aloneFigure(d, s)
+	alone.Note = partsNote(d, aloneCoverage(d.Result), 0)
+	mix, spacing := mixProfile(d, s), spacingProfile(d, s)
+	mix.Axis += ": " + covered(d.Result.Capsule.GradientFraction, 1, "")
+	spacing.Axis += ": " + covered(d.Result.Capsule.PortSpacing, 1000, "mm")
 	const w = 500
 	return []Plot{
 		{"rise", figure.Rise{Style: s.Figure, Curves: riseCurves(d), Residuals: true}, w, 560},
@@ -38,7 +45,10 @@ func Plots(d *Data, s Style) ([]Plot, error) {
 		{"distance", figure.Levels{Style: s.Figure, Curves: levelCurves(d)}, w, 380},
 		{"pattern", figure.Polar{Style: s.Figure, Beta: beta, Expanded: expanded, Known: known}, w, w},
 		{"impulses", impulses, w, 440},
-		{"alone", aloneFigure(d, s), w, 240},
+		{"alone", alone, w, 240},
+		{"profile-mix", mix, w, 300},
+		{"profile-spacing", spacing, w, 300},
+		{"octaves", octaves, w, 240},
 	}, nil
 }
 

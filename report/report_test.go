@@ -40,6 +40,7 @@ func sample(distances int) *Data {
 		},
 		Curves: &fit.Curves{},
 	}
+	addEvidence(d)
 	for i := range distances {
 		r := 0.03 * math.Pow(20, float64(i)/math.Max(float64(distances-1), 1))
 		addDistance(d, string(rune('a'+i%26))+"mm", r)
@@ -111,14 +112,14 @@ func TestTextOfThePages(t *testing.T) {
 		"What is this microphone near a source?", "How much low end does each distance add?", "What did the microphone hear at each distance?",
 		"How does the level fall with distance?", "What pattern is it?", "Was the room kept out?", "Can these numbers be trusted?", "What was recorded?",
 		"SC-12", "serial 2207", "1 December 2026, 10:30 +01:00", "0.503", "± 0.012", "26.4", "± 2.1 mm", "claimed cardioid: agrees",
-		"page 1 of 8", "page 8 of 8", "session 0badcafe", "−6.0", "21.0 °C", "Phantom power", "±",
+		"page 1 of 9", "page 9 of 9", "What do the data hold?", "session 0badcafe", "−6.0", "21.0 °C", "Phantom power", "±",
 	} {
 		if !strings.Contains(text, want) {
 			t.Errorf("the text lacks %q", want)
 		}
 	}
-	if n := strings.Count(text, "\f"); n != 8 {
-		t.Errorf("%d pages, want 8", n)
+	if n := strings.Count(text, "\f"); n != 9 {
+		t.Errorf("%d pages, want 9", n)
 	}
 }
 
@@ -182,6 +183,9 @@ func TestHostileInput(t *testing.T) {
 		"warnings":     func(d *Data) { d.Result.Warnings = make([]measure.Warning, 40) },
 		"long reasons": func(d *Data) { d.Result.Takes[0].Reason = long + long },
 		"one word":     func(d *Data) { d.Result.Warnings = []measure.Warning{{Text: strings.Repeat("x", 5000)}} },
+	}
+	for name, spoil := range crowdedEvidence() {
+		cases[name] = spoil
 	}
 	for name, spoil := range cases {
 		t.Run(name, func(t *testing.T) {

@@ -20,6 +20,29 @@ func value(v fit.Value, scale float64, unit string) string {
 	return number.PlusMinus(*v.Value*scale, *v.Expanded*scale, unit)
 }
 
+// covered is a value with the coverage factor of its ±.
+func covered(v fit.Value, scale float64, unit string) string {
+	if !v.Resolved || v.Value == nil || v.Expanded == nil {
+		return value(v, scale, unit)
+	}
+	return value(v, scale, unit) + " (" + number.Coverage(v.CoverageFactor) + ")"
+}
+
+// coverage says which k stands behind the ± of the pages: 2, but for mix and spacing
+// as their budgets have it.
+func coverage(r *fit.Result) string {
+	out := "every ± is expanded to about 95 %, k = 2"
+	for _, v := range []struct {
+		name string
+		fit.Value
+	}{{"mix", r.Capsule.GradientFraction}, {"spacing", r.Capsule.PortSpacing}} {
+		if k := number.Coverage(v.CoverageFactor); v.Resolved && v.CoverageFactor > 0 && k != "k = 2" {
+			out += "; " + v.name + " " + k
+		}
+	}
+	return out
+}
+
 // limits is what can be said of a value that is not resolved.
 func limits(v fit.Value, scale float64, unit string) string {
 	switch {

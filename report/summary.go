@@ -39,7 +39,7 @@ func summaryAnswer(d *Data) string {
 	c := d.Result.Capsule
 	var out []string
 	if c.GradientFraction.Resolved {
-		out = append(out, fmt.Sprintf("%s: its mix is %s.", capitalised(article(c.Pattern)), value(c.GradientFraction, 1, "")))
+		out = append(out, fmt.Sprintf("%s: its mix is %s.", capitalised(article(c.Pattern)), covered(c.GradientFraction, 1, "")))
 	} else {
 		out = append(out, "The mix of gradient and pressure is "+value(c.GradientFraction, 1, "")+".")
 	}

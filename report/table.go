@@ -26,8 +26,15 @@ const (
 )
 
 // table draws rows under a head; rows that no longer fit are counted in a last line.
-func (d *document) table(columns []column, rows [][]string) {
+func (d *document) table(columns []column, rows [][]string) { d.tableWith(columns, rows, nil) }
+
+// tableWith is a table in whose cells marks are drawn besides: mark is handed the
+// upper left corner of each cell and its width.
+func (d *document) tableWith(columns []column, rows [][]string, mark func(row, column int, x, top, width float64)) {
 	st := d.style.Figure
+	if d.room() < 3*rowHeight {
+		return
+	}
 	var sum float64
 	for _, c := range columns {
 		sum += c.share
@@ -38,7 +45,11 @@ func (d *document) table(columns []column, rows [][]string) {
 	for i, row := range rows {
 		lines := d.lines(columns, row, sum)
 		height := rowHeight + float64(lines-1)*lineHeight
-		if d.room() < height+rowHeight && i < len(rows)-1 {
+		need := height
+		if i < len(rows)-1 {
+			need += rowHeight // for the line that says how many there are
+		}
+		if d.room() < need {
 			d.font("", 8, st.Soft)
 			d.text(marginLeft, d.y+10, "and "+plural(len(rows)-i, "row", "rows")+" more in result.json")
 			d.y += rowHeight
@@ -50,6 +61,9 @@ func (d *document) table(columns []column, rows [][]string) {
 			w := c.share / sum * d.width()
 			if k < len(row) {
 				d.cell(c, row[k], x, d.y+10, w, after[k])
+			}
+			if mark != nil {
+				mark(i, k, x, d.y, w)
 			}
 			x += w
 		}

@@ -42,7 +42,7 @@ func headline(c fit.CapsuleResult) string {
 // found is a value with its ±, or that there is none.
 func found(v fit.Value, scale float64, unit string) string {
 	if v.Resolved && v.Value != nil && v.Expanded != nil {
-		return number.PlusMinus(*v.Value*scale, *v.Expanded*scale, unit) + "  (k = 2)"
+		return number.PlusMinus(*v.Value*scale, *v.Expanded*scale, unit) + "  (" + number.Coverage(v.CoverageFactor) + ")"
 	}
 	out := "not resolved"
 	if v.UpperLimit != nil {

@@ -110,6 +110,8 @@ func TestBadValues(t *testing.T) {
 		{with("virtual: {seed: -1}"), "rig.yaml:4: virtual.seed: -1 is not a whole number from 0 to 2^64-1", "write seed: 1"},
 		{with("virtual: {room: {size: [5m, 4m]}}"), "rig.yaml:4: virtual.room.size: 2 in the list where at least 3 are due", "write size: [5m, 4m, 2.7m]"},
 		{with("virtual: {capsule: {sensitivity: 0}}"), "rig.yaml:4: virtual.capsule.sensitivity: 0 would be silence", "the fault dead makes a silent take"},
+		{with("virtual: {capsule: {gradient_from: 300Hz}}"), "rig.yaml:4: virtual.capsule.gradient_from: phase-shift has one diaphragm, whose mix is the same at all frequencies", "write form: summed, or gradient_from: none"},
+		{with("virtual: {capsule: {form: summed, gradient_from: 300}}"), "rig.yaml:4: virtual.capsule.gradient_from: 300 has no unit", "write 300Hz"},
 		{with("virtual: {capsule: {gradient_fraction: 50%}}"), "rig.yaml:4: virtual.capsule.gradient_fraction: 50% is not a number without unit", "as a fraction: 50% is 0.5"},
 		{with("virtual: {faults: [{kind: burn}]}"), "rig.yaml:4: virtual.faults[0].kind: burn is not one of clip, dropout, dead, wrong-distance, reversed, gain", "possible is clip"},
 		{with("virtual: {faults: [{kind: clip, amount: 2}]}"), "rig.yaml:4: virtual.faults[0].amount: the fault clip has no amount", "remove it"},

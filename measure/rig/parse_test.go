@@ -74,7 +74,7 @@ mover: {command: [./slide, --to, "{distance_mm}"], settle: 2s}
 virtual:
   seed: 18446744073709551615
   real_time: true
-  capsule: {form: summed, body: open, rear: low-pass, gradient_fraction: 1, port_spacing: 30mm, setback: 5mm, sensitivity: -0.25, resonance: 9kHz, resonance_q: 2, high_pass: 20Hz}
+  capsule: {form: summed, body: open, rear: low-pass, gradient_fraction: 1, gradient_from: 300Hz, port_spacing: 30mm, setback: 5mm, sensitivity: -0.25, resonance: 9kHz, resonance_q: 2, high_pass: 20Hz}
   source: {radius: 15mm, high_pass: none, roll_off: none, second: 1%, third: -0.5%}
   room: none
   noise: none
@@ -92,7 +92,7 @@ virtual:
 `)
 	wantVirtual := &Virtual{
 		Seed: math.MaxUint64, RealTime: true,
-		Capsule: VirtualCapsule{Form: "summed", Body: "open", Rear: "low-pass", GradientFraction: 1, PortSpacing: 0.03, Setback: 0.005, Sensitivity: -0.25, Resonance: 9000, ResonanceQ: 2, HighPass: 20},
+		Capsule: VirtualCapsule{Form: "summed", Body: "open", Rear: "low-pass", GradientFraction: 1, GradientFrom: 300, PortSpacing: 0.03, Setback: 0.005, Sensitivity: -0.25, Resonance: 9000, ResonanceQ: 2, HighPass: 20},
 		Source:  VirtualSource{Radius: 0.015, Second: 0.01, Third: -0.005},
 		Hum:     0.001, HumFrequency: 60, Latency: 0.003, ClockOffset: -20e-6, Loopback: true,
 		TapeErrors: map[string]float64{"60mm": -0.0005, "1ft": 0.001},

@@ -111,6 +111,7 @@ type VirtualCapsule struct {
 	Body             string  // sphere, open
 	Rear             string  // delay, low-pass (phase-shift only)
 	GradientFraction float64 // β
+	GradientFrom     float64 // Hz, below which the gradient part fades (summed only), 0 none
 	PortSpacing      float64 // plane-wave effective spacing d, m (3a for the sphere)
 	Setback          float64 // true grille to capsule centre, m
 	Sensitivity      float64 // gain of the far response at 30 mm, relative; negative reverses polarity

@@ -60,6 +60,7 @@ func readVirtualCapsule(m *mapping) VirtualCapsule {
 		Body:             m.choice("body", "sphere", "sphere", "open"),
 		Rear:             m.choice("rear", "delay", "delay", "low-pass"),
 		GradientFraction: m.number("gradient_fraction", "0.5", "0", "1"),
+		GradientFrom:     m.quantityOr("gradient_from", "none", frequency, "none", "0.1Hz", "20kHz"),
 		PortSpacing:      m.quantity("port_spacing", length, "27mm", "0.1mm", "500mm"),
 		Setback:          m.quantity("setback", length, "6mm", "0mm", "200mm"),
 		Sensitivity:      m.nonZero("sensitivity", "0.5"),
@@ -70,6 +71,10 @@ func readVirtualCapsule(m *mapping) VirtualCapsule {
 	// The rear delay of a phase-shift capsule grows without bound for β → 0.
 	if key := "gradient_fraction"; c.Form == "phase-shift" && c.GradientFraction < 0.02 && m.sound(join(m.path, key)) {
 		m.fail(m.lineOf(key), join(m.path, key), "phase-shift makes no capsule with less than 0.02 of gradient", "write form: summed")
+	}
+	// One diaphragm cannot lose its gradient and keep its pressure.
+	if key := "gradient_from"; c.Form == "phase-shift" && c.GradientFrom != 0 && m.sound(join(m.path, key), join(m.path, "form")) {
+		m.fail(m.lineOf(key), join(m.path, key), "phase-shift has one diaphragm, whose mix is the same at all frequencies", "write form: summed, or gradient_from: none")
 	}
 	return c
 }

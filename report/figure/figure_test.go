@@ -132,3 +132,29 @@ func TestPolarPlace(t *testing.T) {
 		}
 	}
 }
+
+// A parabola of standard uncertainty 2 is 4 at ±2 of them, wherever its points are; a
+// curve that rises on one side only has no end on the other.
+func TestInterval(t *testing.T) {
+	nan, inf := math.NaN(), math.Inf(1)
+	for _, p := range []struct {
+		value, excess []float64
+		lo, hi        float64
+	}{
+		{[]float64{4, 7, 10, 13, 17}, []float64{9, 2.25, 0, 2.25, 12.25}, 6, 14},
+		{[]float64{1, 2, 3}, []float64{0, 1, 9}, -inf, 2.5},
+		{[]float64{1, 2, 3}, []float64{9, 1, 0}, 1.5, inf},
+		{[]float64{1, 2, 3}, []float64{0.1, 0, -0.1}, -inf, inf},
+		{[]float64{1, 2, nan, 3}, []float64{0, 1, 2, 9}, -inf, 2.5},
+		{[]float64{1}, []float64{0}, -inf, inf},
+		{nil, nil, nan, nan},
+	} {
+		lo, hi := Interval(p.value, p.excess, 4)
+		same := func(a, b float64) bool {
+			return a == b || math.IsNaN(a) && math.IsNaN(b) || math.Abs(a-b) < 1e-9
+		}
+		if !same(lo, p.lo) || !same(hi, p.hi) {
+			t.Errorf("%v %v: %g to %g, want %g to %g", p.value, p.excess, lo, hi, p.lo, p.hi)
+		}
+	}
+}

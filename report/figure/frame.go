@@ -107,19 +107,23 @@ func levelAxis(p *plot.Plot, lo, hi float64) {
 	if !(hi > lo) {
 		lo, hi = lo-1, lo+1
 	}
-	step := 0.005
-	for _, s := range []float64{0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10, 20, 50, 100} {
-		if step = s; (hi-lo)/s <= 8 {
-			break
-		}
-	}
-	digits := 0
-	for s := step; s < 0.999 && digits < 3; s *= 10 {
-		digits++
-	}
+	step, digits := steps(lo, hi, 8)
 	air := 0.03 * (hi - lo)
 	p.Y.Min, p.Y.Max = lo-air, hi+air
 	p.Y.Tick.Marker = levelTicks{step, digits}
+}
+
+// steps is the least whole step that fits a number of times at most into a range, and
+// the digits that it takes after the point.
+func steps(lo, hi, most float64) (step float64, digits int) {
+	for _, decade := range []float64{1e-3, 1e-2, 1e-1, 1, 10, 100, 1e3, 1e4, 1e5} {
+		for _, n := range []float64{1, 2, 5} {
+			if step = n * decade; (hi-lo)/step <= most {
+				return step, max(0, -int(math.Floor(math.Log10(step)+1e-9)))
+			}
+		}
+	}
+	return step, 0
 }
 
 // grid draws hairlines at every labelled tick.

@@ -107,6 +107,18 @@ func Time(s float64) string {
 // Percent writes a ratio as a percentage of two significant digits.
 func Percent(ratio float64) string { return significant(100*ratio, 2) + " %" }
 
+// Coverage writes a coverage factor, "k = 2" or "k = 2.13"; where none is known, the
+// coverage itself.
+func Coverage(k float64) string {
+	if !(k > 0) || math.IsInf(k, 0) {
+		return "about 95 %"
+	}
+	return "k = " + significant(k, 3)
+}
+
+// Significant writes n significant digits without trailing zeros.
+func Significant(x float64, n int) string { return significant(x, n) }
+
 // significant writes n significant digits without trailing zeros.
 func significant(x float64, n int) string {
 	if x == 0 || math.IsNaN(x) || math.IsInf(x, 0) {

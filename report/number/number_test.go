@@ -38,6 +38,7 @@ func TestQuantities(t *testing.T) {
 		{Frequency(80), "80 Hz"}, {Frequency(1000), "1 kHz"}, {Frequency(4535.2), "4.54 kHz"}, {Frequency(999.7), "1 kHz"}, {Frequency(62.5), "62.5 Hz"},
 		{Length(0.03), "30 mm"}, {Length(0.0635), "63.5 mm"}, {Length(1.2), "1.2 m"}, {Length(0.6), "600 mm"},
 		{Time(0.0058), "5.8 ms"}, {Time(2), "2 s"}, {Percent(0.00061), "0.061 %"}, {Percent(0.5), "50 %"},
+		{Coverage(2), "k = 2"}, {Coverage(2.1314), "k = 2.13"}, {Coverage(12.706), "k = 12.7"}, {Coverage(0), "about 95 %"}, {Coverage(math.NaN()), "about 95 %"},
 		{Fixed(math.Inf(-1), 1), "−∞"}, {Fixed(-1.25, 1), "−1.2"}, {Signed(2.5, 1), "+2.5"}, {Signed(0.01, 1), "0.0"}, {Fixed(1234, -2), "1200"},
 	} {
 		if p.got != p.want {

@@ -6,7 +6,7 @@ import "math/cmplx"
 // one bin: at its front and rear port and at its centre.
 type entries struct{ front, rear, centre complex128 }
 
-// output is the capsule's output for the pressures at its entries.
+// output is the capsule's output at f for the pressures at its entries, k = 2πf/c.
 //
 //	phase-shift  the rear pressure goes through the network and both meet at the
 //	             diaphragm; a diaphragm whose motion is resistance-controlled gives
@@ -15,14 +15,15 @@ type entries struct{ front, rear, centre complex128 }
 //
 // with the network e^{−jωτ} (delay) or 1/(1+jωτ) (low-pass), cτ = d(1−β)/β. A
 // summed capsule on a solid body has no pressure at its centre; its pressure
-// element listens at both poles alike.
-func (c Capsule) output(k float64, p entries) complex128 {
-	beta, d := c.GradientFraction, c.PortSpacing
+// element listens at both poles alike. Its β may be that of fading.
+func (c Capsule) output(f, k float64, p entries) complex128 {
+	d := c.PortSpacing
 	if c.Form == Summed {
 		if c.Body == Sphere {
 			p.centre = 0.5 * (p.front + p.rear)
 		}
-		return complex(1-beta, 0)*p.centre + complex(beta, 0)*(p.front-p.rear)/complex(0, k*d)
+		beta := c.fading(f)
+		return (1-beta)*p.centre + beta*(p.front-p.rear)/complex(0, k*d)
 	}
 	length := c.rearLength()
 	network := cmplx.Rect(1, -k*length)
@@ -30,6 +31,18 @@ func (c Capsule) output(k float64, p entries) complex128 {
 		network = 1 / complex(1, k*length)
 	}
 	return (p.front - p.rear*network) / complex(0, k*(d+length))
+}
+
+// fading is the gradient fraction at f: β·jf/(f₀+jf) where GradientFrom f₀ is given,
+// as if the pressure element took over below it. Far away that is a cardioid above
+// f₀ and an omni below. Near by, the gradient rises with 1/f as fast as it fades, so
+// that the rise ends in a shelf, 1 + βc/(2πf₀r) over the pressure.
+func (c Capsule) fading(f float64) complex128 {
+	beta := complex(c.GradientFraction, 0)
+	if c.GradientFrom == 0 {
+		return beta
+	}
+	return beta * complex(0, f) / complex(c.GradientFrom, f)
 }
 
 // rearLength is cτ of the rear network, m.

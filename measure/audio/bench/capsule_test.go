@@ -145,5 +145,5 @@ func fromAngle(t *testing.T, config Config, degrees float64) complex128 {
 	sin, cos := math.Sincos(degrees * math.Pi / 180)
 	at := config.Capsule.newField(49)
 	b.addImage(at, image{along: 100 * cos, aside: math.Abs(100 * sin), strength: 1}, 500)
-	return config.Capsule.output(2*math.Pi*1000/config.SpeedOfSound, at.at(2))
+	return config.Capsule.output(1000, 2*math.Pi*1000/config.SpeedOfSound, at.at(2))
 }

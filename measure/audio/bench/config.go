@@ -33,6 +33,7 @@ type Capsule struct {
 	Body             string  // sphere, open
 	Rear             string  // delay, low-pass; phase-shift only
 	GradientFraction float64 // β, 0 to 1
+	GradientFrom     float64 // Hz, below which the gradient part fades, summed only; 0 none
 	PortSpacing      float64 // plane-wave effective spacing d, m (3a for the sphere)
 	Setback          float64 // grille to capsule centre, m
 	Sensitivity      float64 // see the package comment; negative reverses polarity

@@ -57,7 +57,7 @@ func (b *Bench) path(ctx context.Context, p *played, r float64) ([]complex128, e
 	for i := 1; i < len(h); i++ {
 		f := float64(i) * step
 		k := 2 * math.Pi * f / b.cfg.SpeedOfSound
-		h[i] = referenceDistance * b.cfg.Capsule.output(k, at.at(i)) * b.electric(f)
+		h[i] = referenceDistance * b.cfg.Capsule.output(f, k, at.at(i)) * b.electric(f)
 	}
 	h[0] = 0 // no microphone transmits a level
 	h[n/2] = complex(real(h[n/2]), 0)

@@ -75,6 +75,9 @@ func anyConfig(t *rapid.T) Config {
 			Second: orNone("second", -0.3, 0.3), Third: orNone("third", -0.3, 0.3),
 		},
 	}
+	if c.Capsule.Form == Summed {
+		c.Capsule.GradientFrom = orNone("gradient from", 0.1, 20e3)
+	}
 	if rapid.Bool().Draw(t, "room") {
 		c.Room = &Room{Size: [3]float64{number("length", 0.5, 20), number("width", 0.5, 20), number("height", 0.5, 5)}, Reflection: number("reflection", 0, 0.99)}
 	}

@@ -48,10 +48,14 @@ func (c Capsule) validate() error {
 		inRange("port spacing", c.PortSpacing, 1e-4, 0.5),
 		inRange("setback", c.Setback, -0.5, 0.5),
 		inRange("sensitivity", math.Abs(c.Sensitivity), 1e-9, 1e9),
+		corner("frequency from which on the gradient is whole", c.GradientFrom),
 		corner("resonance", c.Resonance),
 		corner("high-pass of the capsule", c.HighPass),
 	}
 	if c.Form == PhaseShift {
+		if c.GradientFrom != 0 {
+			errs = append(errs, errors.New("a gradient that fades needs two elements; use the form summed"))
+		}
 		errs = append(errs, oneOf("rear", c.Rear, Delay, LowPass))
 		if c.GradientFraction < leastPhaseShift {
 			errs = append(errs, fmt.Errorf("gradient fraction %g is below %g, where no rear path is long enough for a phase-shift capsule; use the form summed", c.GradientFraction, leastPhaseShift))
