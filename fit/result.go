@@ -114,26 +114,6 @@ type Candidate struct {
 	Why              string  `json:"why"`
 }
 
-// Profiles are the profile likelihoods of mix and spacing; empty where none were
-// made.
-type Profiles struct {
-	GradientFraction Profile `json:"gradient_fraction"`
-	PortSpacing      Profile `json:"port_spacing_m"`
-}
-
-// Profile is how the misfit grows while one number is held at a value.
-type Profile struct {
-	Value  []float64 `json:"value"`
-	Excess []float64 `json:"excess"` // misfit above the least, everything else fitted again, in units in which 1 is one standard uncertainty squared and 3.84 the 95 % limit
-}
-
-// OctaveMix is the mix that the frequencies of one octave give by themselves.
-type OctaveMix struct {
-	From             float64 `json:"from_hz"`
-	To               float64 `json:"to_hz"`
-	GradientFraction Value   `json:"gradient_fraction"`
-}
-
 // RiseTable is the rise in dB at working distances: DB[i][j] at
 // Frequencies[i] and Distances[j], with Expanded[i][j] at k = 2.
 type RiseTable struct {

@@ -33,16 +33,14 @@ func (c Capsule) output(f, k float64, p entries) complex128 {
 	return (p.front - p.rear*network) / complex(0, k*(d+length))
 }
 
-// fading is the gradient fraction at f: β·jf/(f₀+jf) where GradientFrom f₀ is given,
-// as if the pressure element took over below it. Far away that is a cardioid above
-// f₀ and an omni below. Near by, the gradient rises with 1/f as fast as it fades, so
-// that the rise ends in a shelf, 1 + βc/(2πf₀r) over the pressure.
+// fading is the gradient fraction at f: β·f²/(f₀²+f²) where GradientFrom f₀ is given,
+// as if two elements were joined by a network of linear phase that hands over to the
+// pressure element below it.
 func (c Capsule) fading(f float64) complex128 {
-	beta := complex(c.GradientFraction, 0)
 	if c.GradientFrom == 0 {
-		return beta
+		return complex(c.GradientFraction, 0)
 	}
-	return beta * complex(0, f) / complex(c.GradientFrom, f)
+	return complex(c.GradientFraction*f*f/(c.GradientFrom*c.GradientFrom+f*f), 0)
 }
 
 // rearLength is cτ of the rear network, m.

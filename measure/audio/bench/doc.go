@@ -28,15 +28,14 @@
 //
 // A capsule of the form summed may lose its gradient part below a frequency f₀:
 //
-//	β(f) = β·jf/(f₀+jf),  output (1−β(f))·p + β(f)·g
+//	β(f) = β·f²/(f₀²+f²),  output (1−β(f))·p + β(f)·g
 //
-// with the pressure p at the centre and the gradient g, level for a far source. Far
-// away a cardioid so becomes an omni below f₀; at f₀ its back is 3 dB down where a
-// cardioid's is silent. Near by, p and g differ by 1/(jkr), against which a first
-// order can just hold its own: below f₀ the rise stays at 1 + βc/(2πf₀r), with
-// β = 0.5 and f₀ = 300 Hz some 0.6 dB at 1.2 m and 10 dB at 40 mm. One diaphragm
-// has no such thing: a leak to its back takes the pressure's drive away as well, and
-// its resistance-controlled output would rise without end. So phase-shift refuses it.
+// with the pressure p at the centre and the gradient g, level for a far source. So a
+// cardioid becomes an omni below f₀, near and far: against the gradient's 1/(jkr) a
+// first order could just hold its own, the rise would end in a shelf of 1 + βc/(2πf₀r).
+// One diaphragm has no such thing: a leak to its back takes the pressure's drive away
+// as well, and its resistance-controlled output would rise without end. So phase-shift
+// refuses it.
 //
 // # Level
 //
