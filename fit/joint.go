@@ -48,6 +48,10 @@ type Joint struct {
 // ReducedChiSquare of the data.
 func (j *Joint) ReducedChiSquare() float64 { return j.ChiSquare / math.Max(float64(j.Freedom), 1) }
 
+// Misfit is the sum of squares that the fit made least: of the data over their
+// variances and of what is known beforehand.
+func (j *Joint) Misfit() float64 { return newSeparable(j.data, j.Model).misfit(j.x) }
+
 // FitModel fits one model to a dataset from several starts and keeps the best.
 func FitModel(d *Dataset, m Model) (*Joint, error) { return fitModel(d, m, nil) }
 

@@ -175,20 +175,24 @@ func (p *separable) compare(dst, x []float64) {
 	}
 }
 
-// jacobian is Kaufman's, with forward differences of the model only.
+// jacobian is Kaufman's, with differences of the model only: forward ones, but for
+// the mix, whose are central since they cost next to nothing.
 func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	p.evaluate(x)
-	dist := p.derivative(x, p.at.setback, 2e-8)
-	p.project(dst, p.at.setback, dist, -1)
-	for i := range p.data.Points {
-		p.project(dst, p.at.tape+i, dist, i)
-	}
-	p.project(dst, p.at.beta, p.derivative(x, p.at.beta, 1e-6), -1)
-	p.project(dst, p.at.spacing, p.derivative(x, p.at.spacing, 2e-8), -1)
-	p.project(dst, p.at.speed, p.derivative(x, p.at.speed, 1e-4), -1)
+	byMix := p.byMix(x)
+	byPlace, bySpacing := p.derivative(x, p.at.setback, 2e-8), p.derivative(x, p.at.spacing, 2e-8)
+	var byRadius [][]complex128
 	if p.model.Source == PistonSource {
-		p.project(dst, p.at.radius, p.derivative(x, p.at.radius, 2e-8), -1)
+		byRadius = p.derivative(x, p.at.radius, 2e-8)
+		p.project(dst, p.at.radius, byRadius, -1)
 	}
+	p.project(dst, p.at.beta, byMix, -1)
+	p.project(dst, p.at.spacing, bySpacing, -1)
+	p.project(dst, p.at.setback, byPlace, -1)
+	for i := range p.data.Points {
+		p.project(dst, p.at.tape+i, byPlace, i)
+	}
+	p.project(dst, p.at.speed, p.bySpeed(x, byPlace, bySpacing, byRadius), -1)
 	if p.data.FreeClock {
 		p.delays(dst)
 	}
@@ -213,17 +217,51 @@ func (p *separable) derivative(x []float64, param int, step float64) [][]complex
 	plus := p.grid()
 	y := append([]float64(nil), x...)
 	y[param] += step
-	if param == p.at.beta {
-		p.remix(plus, y)
-	} else {
-		p.fill(plus, nil, y)
-	}
+	p.fill(plus, nil, y)
 	for i := range plus {
 		for j := range plus[i] {
 			plus[i][j] = scaled(plus[i][j]-p.h[i][j], 1/step)
 		}
 	}
 	return plus
+}
+
+// byMix is the derivative by the mix.
+func (p *separable) byMix(x []float64) [][]complex128 {
+	const step = 1e-5
+	plus, minus := p.grid(), p.grid()
+	y := append([]float64(nil), x...)
+	y[p.at.beta] += step
+	p.remix(plus, y)
+	y[p.at.beta] -= 2 * step
+	p.remix(minus, y)
+	for i := range plus {
+		for j := range plus[i] {
+			plus[i][j] = scaled(plus[i][j]-minus[i][j], 0.5/step)
+		}
+	}
+	return plus
+}
+
+// bySpeed is the derivative by the speed of sound c, from those by the lengths. A
+// response is one over a length times a function of lengths over wavelengths, so that
+// by Euler's theorem, with k = ω/c,
+//
+//	r·∂H/∂r + d·∂H/∂d + b·∂H/∂b − k·∂H/∂k = −H,   c·∂H/∂c = −k·∂H/∂k.
+func (p *separable) bySpeed(x []float64, byPlace, bySpacing, byRadius [][]complex128) [][]complex128 {
+	out := p.grid()
+	ac := p.acoustics(x)
+	for i := range out {
+		r := p.distance(x, i)
+		for j := range out[i] {
+			v := p.h[i][j] + scaled(byPlace[i][j], r) + scaled(bySpacing[i][j], ac.Spacing)
+			if byRadius != nil {
+				v += scaled(byRadius[i][j], ac.Radius)
+			}
+			out[i][j] = scaled(v, -1/ac.Speed)
+		}
+	}
+	return out
 }
 
 func (p *separable) grid() [][]complex128 {

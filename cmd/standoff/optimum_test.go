@@ -82,6 +82,9 @@ func TestOptimumAgainstScipy(t *testing.T) {
 	if err := json.Unmarshal(text, &theirs); err != nil {
 		t.Fatal(err)
 	}
+	if off := best.Misfit()/(2*theirs["cost"]) - 1; off > 1e-8 {
+		t.Errorf("our misfit is larger by %.1e of itself", off)
+	}
 	for name, got := range map[string]float64{"beta": best.Acoustics.Beta, "spacing": best.Acoustics.Spacing, "setback": best.Setback,
 		"radius": best.Acoustics.Radius, "speed": best.Acoustics.Speed} {
 		t.Logf("%s: %.9g, scipy %.9g", name, got, theirs[name])
