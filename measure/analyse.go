@@ -196,5 +196,9 @@ func energyAround(x []float64, at, reach int) (sum float64) {
 	return sum
 }
 
+// NoiseGain is the power density of the deconvolved response at f Hz for white noise of
+// unit variance per sample in a recording.
+func (a *Analyser) NoiseGain(f float64) float64 { return a.dec.NoiseGain(f) }
+
 // Longest is the longest recording in samples that the Analyser can take.
 func (a *Analyser) Longest() int { return a.dec.Len() - a.exc.Rate }

@@ -30,3 +30,4 @@ table() {
 table efficiency DRAWS=500 TestEstimatesAreEfficient ./fit "$@"
 table worlds STUDY=16 TestWorlds ./cmd/standoff "$@"
 table rooms ROOMS=100 TestRooms ./cmd/standoff "$@"
+table plan PLAN=40 TestPlanForeseesTheScatter ./cmd/standoff "$@"

@@ -23,6 +23,7 @@ type cli struct {
 
 	New     newCmd     `cmd:"" help:"Write a commented rig to start from."`
 	Devices devicesCmd `cmd:"" help:"List the audio devices by the names that a rig uses."`
+	Plan    planCmd    `cmd:"" help:"Tell what a list of distances will hold, before anybody measures."`
 	Sweep   sweepCmd   `cmd:"" help:"Write the sweep as a WAV, to be played by anything."`
 	Run     runCmd     `cmd:"" help:"Measure one microphone: guided takes, then fit and report."`
 	Import  importCmd  `cmd:"" help:"Make a session of recordings made elsewhere, then fit and report."`
@@ -87,7 +88,7 @@ func run(ctx context.Context, args []string, in io.Reader, out, errOut io.Writer
 // named is the command among the arguments, with a space, for a hint.
 func named(args []string) string {
 	if len(args) > 0 && !strings.HasPrefix(args[0], "-") {
-		for _, known := range []string{"new", "devices", "sweep", "run", "import", "fit", "report", "demo"} {
+		for _, known := range []string{"new", "devices", "plan", "sweep", "run", "import", "fit", "report", "demo"} {
 			if args[0] == known {
 				return known + " "
 			}

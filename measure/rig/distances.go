@@ -68,11 +68,19 @@ func (f *file) findDistance(list []measure.Distance, text string, line int, path
 	return "", false
 }
 
-// Length reads a length with its unit, such as 30mm or 2.5in, in m.
-func Length(text string) (float64, error) {
-	metres, wrong := length.parse(strings.TrimSpace(text))
+// Duration reads a time with its unit, such as 6ms, in s.
+func Duration(text string) (float64, error) { return read(duration, text) }
+
+// Percentage reads a percentage, such as 0.1%, as a ratio.
+func Percentage(text string) (float64, error) { return read(percentage, text) }
+
+func read(d dimension, text string) (float64, error) {
+	v, wrong := d.parse(strings.TrimSpace(text))
 	if wrong != nil {
 		return 0, errors.New(wrong.reason)
 	}
-	return metres, nil
+	return v, nil
 }
+
+// Length reads a length with its unit, such as 30mm or 2.5in, in m.
+func Length(text string) (float64, error) { return read(length, text) }
