@@ -15,6 +15,8 @@ type file struct {
 	errs  Errors
 	asked []string              // paths of all keys that had a chance to be there
 	found map[string]*yaml.Node // path → value, of those that were
+	// include reads a file that this one names.
+	include func(name string) (path string, raw []byte, err error)
 }
 
 func (f *file) fail(line int, key, reason, hint string) {

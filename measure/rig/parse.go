@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"path/filepath"
 
 	"gopkg.in/yaml.v3"
 )
@@ -25,10 +26,17 @@ func Load(path string) (*Rig, error) {
 	return Parse(path, raw)
 }
 
-// Parse checks a rig that has been read. The path is only named, in messages
-// and in the result. The error, if any, is of type Errors.
+// Parse checks a rig that has been read. The path is only named, in messages and in
+// the result, and is where source.from starts from. The error, if any, is of type
+// Errors.
 func Parse(path string, raw []byte) (*Rig, error) {
-	f := &file{name: path, found: map[string]*yaml.Node{}}
+	return ParseWith(path, raw, func(name string) (string, []byte, error) { return beside(path, name) })
+}
+
+// ParseWith is Parse with a reader of its own for the file that source.from names: it
+// returns the file's path, for messages, and what is in it.
+func ParseWith(path string, raw []byte, include func(name string) (string, []byte, error)) (*Rig, error) {
+	f := &file{name: path, found: map[string]*yaml.Node{}, include: include}
 	root := f.document(raw)
 	if root == nil {
 		return nil, f.errs.inOrder()
@@ -41,10 +49,27 @@ func Parse(path string, raw []byte) (*Rig, error) {
 	return r, nil
 }
 
-// Hash is the SHA-256 of the file, in hexadecimal.
+// beside reads a file that a rig names, from where the rig is.
+func beside(path, name string) (string, []byte, error) {
+	if !filepath.IsAbs(name) {
+		name = filepath.Join(filepath.Dir(path), name)
+	}
+	f, err := os.Open(name)
+	if err != nil {
+		return name, nil, err
+	}
+	defer f.Close()
+	raw, err := io.ReadAll(io.LimitReader(f, MaxBytes+1))
+	return name, raw, err
+}
+
+// Hash is the SHA-256 of the file, and of the source's file where it names one, in
+// hexadecimal.
 func (r *Rig) Hash() string {
-	sum := sha256.Sum256(r.Raw)
-	return hex.EncodeToString(sum[:])
+	h := sha256.New()
+	h.Write(r.Raw)
+	h.Write(r.Source.Raw)
+	return hex.EncodeToString(h.Sum(nil))
 }
 
 // read goes through the sections, then compares what stands in several of them.

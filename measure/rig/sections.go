@@ -1,10 +1,14 @@
 package rig
 
 import (
+	"errors"
 	"fmt"
+	"io/fs"
 	"regexp"
 	"slices"
 	"strings"
+
+	"gopkg.in/yaml.v3"
 
 	"standoff/measure"
 )
@@ -54,18 +58,74 @@ func readCapsule(m *mapping) Capsule {
 	}
 }
 
+// readSource reads the loudspeaker, from a file of its own where source.from names
+// one; then the rig itself may only add the polarity.
 func readSource(m *mapping) Source {
 	defer m.close()
+	from, line, ok := m.scalar("from", "the path of a file that standoff source wrote")
+	if !ok {
+		return readSourceKeys(m)
+	}
+	polarity := m.choice("polarity", "unknown", "unknown", "normal", "reversed")
+	for _, key := range m.keys {
+		if path := join(m.path, key.Value); key.Value != "from" && key.Value != "polarity" {
+			m.known = append(m.known, key.Value)
+			m.fail(key.Line, path, "stands in "+show(from)+" already", "remove it here, or remove source.from")
+		}
+	}
+	s := m.includedSource(from, line)
+	if m.values["polarity"] != nil {
+		s.Polarity = polarity
+	}
+	return s
+}
+
+func readSourceKeys(m *mapping) Source {
 	s := Source{
 		Kind:              m.choice("kind", "piston", "point", "piston"),
 		Radius:            m.quantity("radius", length, "17mm", "1mm", "200mm"),
 		RadiusUncertainty: m.quantity("radius_uncertainty", length, "1mm", "0.01mm", "100mm"),
+		Centre:            m.quantity("centre", length, "0mm", "-200mm", "200mm"),
+		CentreUncertainty: m.quantity("centre_uncertainty", length, "0mm", "0mm", "100mm"),
 		Polarity:          m.choice("polarity", "unknown", "unknown", "normal", "reversed"),
 	}
 	if s.Kind == "point" {
 		s.Radius, s.RadiusUncertainty = 0, 0
 	}
 	return s
+}
+
+// includedSource reads the file that source.from names: the keys of source, at the top.
+func (m *mapping) includedSource(name string, line int) Source {
+	key := join(m.path, "from")
+	path, raw, err := m.include(name)
+	if err != nil {
+		m.fail(line, key, fmt.Sprintf("cannot read %s: %v", show(path), reasonOf(err)), "the path starts from where the rig is; standoff source writes such a file")
+		return Source{}
+	}
+	f := &file{name: path, found: map[string]*yaml.Node{}}
+	var s Source
+	if root := f.document(raw); root != nil {
+		inner := f.mapping(root, "", root.Line)
+		if inner.state != broken {
+			inner.require("radius", "17mm")
+			inner.require("radius_uncertainty", "0.5mm")
+			s = readSourceKeys(inner)
+			inner.close()
+		}
+	}
+	m.errs = append(m.errs, f.errs...)
+	s.From, s.Raw = name, raw
+	return s
+}
+
+// reasonOf is what went wrong with a file, without its name.
+func reasonOf(err error) error {
+	var p *fs.PathError
+	if errors.As(err, &p) {
+		return p.Err
+	}
+	return err
 }
 
 func readAir(m *mapping) measure.Air {

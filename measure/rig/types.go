@@ -50,7 +50,12 @@ type Source struct {
 	Kind              string  // point, piston
 	Radius            float64 // m; 0 for a point
 	RadiusUncertainty float64 // standard, m
+	Centre            float64 // by how much its sound comes from behind the reference plane, m
+	CentreUncertainty float64 // standard, m
 	Polarity          string  // unknown, normal, reversed: whether a positive signal makes a positive pressure
+
+	From string // the file that it was measured into, "" without
+	Raw  []byte // that file, byte for byte
 }
 
 // Sweep is the excitation.

@@ -34,7 +34,7 @@ func checkDerived(rel string) error {
 			return fmt.Errorf("%q is not a name inside a session folder", rel)
 		}
 	}
-	recorded := []string{takesDir, rigName, manifestName, excitationName}
+	recorded := []string{takesDir, rigName, sourceName, manifestName, excitationName}
 	if slices.Contains(recorded, strings.ToLower(parts[0])) {
 		return fmt.Errorf("%s is part of the record and not written again", rel)
 	}

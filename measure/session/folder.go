@@ -19,6 +19,7 @@ import (
 
 const (
 	rigName        = "rig.yaml"
+	sourceName     = "source.yaml"
 	manifestName   = "session.json"
 	excitationName = "excitation.wav"
 )

@@ -37,7 +37,7 @@ func (f *Folder) refuseForeign() error {
 	if has(manifestName) {
 		return nil
 	}
-	known := slices.Concat(bySystem, []string{lockName, rigName, takesDir})
+	known := slices.Concat(bySystem, []string{lockName, rigName, sourceName, takesDir})
 	if has(rigName) {
 		known = slices.Concat(known, derived, []string{excitationName})
 	}

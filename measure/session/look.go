@@ -53,7 +53,7 @@ func (f *Folder) look() error {
 	if err != nil {
 		return cannot("read", f.Path(rigName), err)
 	}
-	r, err := rig.Parse(f.Path(rigName), raw)
+	r, err := rig.ParseWith(f.Path(rigName), raw, f.includedSource)
 	if err != nil {
 		return err
 	}

@@ -28,7 +28,7 @@ func (f *Folder) settleRig(r *rig.Rig, m Manifest, found bool) error {
 	case err == nil && found && m.RigSHA256 != r.Hash():
 		return &RigChangedError{Dir: f.dir}
 	case err == nil:
-		return nil
+		return f.settleSource(r)
 	case !errors.Is(err, fs.ErrNotExist):
 		return cannot("read", f.Path(rigName), err)
 	case found && m.RigSHA256 != r.Hash():
@@ -43,7 +43,38 @@ func (f *Folder) settleRig(r *rig.Rig, m Manifest, found bool) error {
 	if err != nil {
 		return cannot("write", f.Path(rigName), err)
 	}
+	return f.settleSource(r)
+}
+
+// settleSource keeps the file that the rig's source.from names beside the rig, so that
+// the folder can be read wherever it goes.
+func (f *Folder) settleSource(r *rig.Rig) error {
+	if r.Source.From == "" {
+		return nil
+	}
+	raw, err := f.disk.ReadFile(sourceName, rig.MaxBytes)
+	switch {
+	case err == nil && !bytes.Equal(raw, r.Source.Raw):
+		return rigChanged(f.dir, f.Path(sourceName), r.Source.From, raw, r.Source.Raw)
+	case err == nil:
+		return nil
+	case !errors.Is(err, fs.ErrNotExist):
+		return cannot("read", f.Path(sourceName), err)
+	}
+	_, _, err = place(f.disk, sourceName, true, func(w io.Writer) error {
+		_, err := w.Write(r.Source.Raw)
+		return err
+	})
+	if err != nil {
+		return cannot("write", f.Path(sourceName), err)
+	}
 	return nil
+}
+
+// includedSource is that file, whatever the rig calls it.
+func (f *Folder) includedSource(string) (string, []byte, error) {
+	raw, err := f.disk.ReadFile(sourceName, rig.MaxBytes)
+	return f.Path(sourceName), raw, err
 }
 
 // settleUnit makes sure that all takes are of one unit.
