@@ -29,9 +29,13 @@ type Dataset struct {
 	// standard uncertainties: of the mix, and of the spacing relative to it.
 	MethodMix, MethodSpacing float64
 
-	level   []float64 // |S·Far| on Hz, for Room; nil is none
-	louder  int       // 1 + the point whose gain is free; 0 is none
-	inflate float64   // of all variances; 0 is 1
+	level []float64 // |S·Far| on Hz, for Room; nil is none
+	// pressure holds the mix at 0 and the spacing at its least: of a microphone without a
+	// gradient part.
+	pressure bool
+
+	louder  int     // 1 + the point whose gain is free; 0 is none
+	inflate float64 // of all variances; 0 is 1
 }
 
 // Point is one distance.

@@ -466,7 +466,7 @@ func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 	r := a.rig
 	d := &fit.Dataset{
 		Hz: hz, FreeClock: clock == measure.ClockFree,
-		Setback: r.Capsule.Setback, SetbackUncertainty: r.Capsule.SetbackUncertainty,
+		Setback: r.Capsule.Setback + r.Source.Centre, SetbackUncertainty: math.Hypot(r.Capsule.SetbackUncertainty, r.Source.CentreUncertainty),
 		Radius: r.Source.Radius, RadiusUncertainty: r.Source.RadiusUncertainty,
 		Speed: r.Air.SpeedOfSound(), SpeedUncertainty: r.Air.SpeedUncertainty(),
 		MethodMix: methodMix, MethodSpacing: methodSpacing,

@@ -10,7 +10,7 @@ import (
 	"github.com/alecthomas/kong"
 )
 
-var commandLine = regexp.MustCompile("(?m)(?:`|^ {2,}|: )standoff ((?:new|devices|plan|sweep|run|import|fit|report|demo)\\b[^`\n#]*)")
+var commandLine = regexp.MustCompile("(?m)(?:`|^ {2,}|: )standoff ((?:new|devices|plan|sweep|run|import|source|fit|report|demo)\\b[^`\n#]*)")
 
 // Every command line in the manual and in the help is one that the program takes.
 func TestManualsCommandsParse(t *testing.T) {
@@ -19,7 +19,7 @@ func TestManualsCommandsParse(t *testing.T) {
 		t.Fatal(err)
 	}
 	sources := map[string]string{"README.md": string(text)}
-	for _, c := range []string{"new", "devices", "plan", "sweep", "run", "import", "fit", "report", "demo"} {
+	for _, c := range []string{"new", "devices", "plan", "sweep", "run", "import", "source", "fit", "report", "demo"} {
 		code, out, _ := standoff(t, c, "--help")
 		if code != exitDone || !strings.Contains(out, "Example:") || !strings.Contains(out, "Exit codes:") {
 			t.Errorf("%s --help: exit %d, without example or exit codes", c, code)

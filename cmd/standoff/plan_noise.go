@@ -19,7 +19,7 @@ func (p *plan) dataset() error {
 	from, to := max(r.Fit.From, r.Sweep.From, p.gate.Lowest()), math.Min(r.Fit.To, r.Sweep.To)
 	d := &fit.Dataset{
 		Hz: measure.Grid(from, to, p.gate.Duration()), Unexplained: p.leftOver,
-		Setback: r.Capsule.Setback, SetbackUncertainty: r.Capsule.SetbackUncertainty,
+		Setback: r.Capsule.Setback + r.Source.Centre, SetbackUncertainty: math.Hypot(r.Capsule.SetbackUncertainty, r.Source.CentreUncertainty),
 		Radius: r.Source.Radius, RadiusUncertainty: r.Source.RadiusUncertainty,
 		Speed: r.Air.SpeedOfSound(), SpeedUncertainty: r.Air.SpeedUncertainty(),
 		MethodMix: methodMix, MethodSpacing: methodSpacing,

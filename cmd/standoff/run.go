@@ -27,6 +27,7 @@ type cli struct {
 	Sweep   sweepCmd   `cmd:"" help:"Write the sweep as a WAV, to be played by anything."`
 	Run     runCmd     `cmd:"" help:"Measure one microphone: guided takes, then fit and report."`
 	Import  importCmd  `cmd:"" help:"Make a session of recordings made elsewhere, then fit and report."`
+	Source  sourceCmd  `cmd:"" help:"Measure the loudspeaker itself, from a session with a pressure microphone."`
 	Fit     fitCmd     `cmd:"" help:"Analyse sessions again."`
 	Report  reportCmd  `cmd:"" help:"Write the report of sessions again."`
 	Demo    demoCmd    `cmd:"" help:"Do the whole job on the virtual bench, without hardware."`
@@ -88,7 +89,7 @@ func run(ctx context.Context, args []string, in io.Reader, out, errOut io.Writer
 // named is the command among the arguments, with a space, for a hint.
 func named(args []string) string {
 	if len(args) > 0 && !strings.HasPrefix(args[0], "-") {
-		for _, known := range []string{"new", "devices", "plan", "sweep", "run", "import", "fit", "report", "demo"} {
+		for _, known := range []string{"new", "devices", "plan", "sweep", "run", "import", "source", "fit", "report", "demo"} {
 			if args[0] == known {
 				return known + " "
 			}

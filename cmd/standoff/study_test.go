@@ -63,6 +63,18 @@ func (w world) meet(t *testing.T, seed uint64) *rig.Rig {
 // measured does the whole job on a bench, files included.
 func measured(t *testing.T, r *rig.Rig, dir string) *analysed {
 	t.Helper()
+	f := recorded(t, r, dir)
+	defer f.Close()
+	a, err := analyse(t.Context(), f, "study")
+	if err != nil {
+		t.Fatal(err)
+	}
+	return a
+}
+
+// recorded makes all takes of a bench.
+func recorded(t *testing.T, r *rig.Rig, dir string) *session.Folder {
+	t.Helper()
 	rec, err := openRecorder(t.Context(), r)
 	if err != nil {
 		t.Fatal(err)
@@ -72,7 +84,7 @@ func measured(t *testing.T, r *rig.Rig, dir string) *analysed {
 	if err != nil {
 		t.Fatal(err)
 	}
-	defer f.Close()
+	t.Cleanup(func() { f.Close() })
 	e := &env{ctx: t.Context(), voice: &voice{out: io.Discard, err: io.Discard, quiet: true}}
 	tk, err := newTaker(e, f, rec)
 	if err != nil {
@@ -82,11 +94,7 @@ func measured(t *testing.T, r *rig.Rig, dir string) *analysed {
 	if err := tk.all(r.Distances); err != nil {
 		t.Fatal(err)
 	}
-	a, err := analyse(t.Context(), f, "study")
-	if err != nil {
-		t.Fatal(err)
-	}
-	return a
+	return f
 }
 
 // score is what many benches of one world say.

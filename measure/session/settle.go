@@ -25,10 +25,14 @@ func (f *Folder) settleRig(r *rig.Rig, m Manifest, found bool) error {
 	switch {
 	case err == nil && !bytes.Equal(raw, r.Raw):
 		return rigChanged(f.dir, f.Path(rigName), r.Path, raw, r.Raw)
-	case err == nil && found && m.RigSHA256 != r.Hash():
-		return &RigChangedError{Dir: f.dir}
 	case err == nil:
-		return f.settleSource(r)
+		if err := f.settleSource(r); err != nil {
+			return err
+		}
+		if found && m.RigSHA256 != r.Hash() {
+			return &RigChangedError{Dir: f.dir}
+		}
+		return nil
 	case !errors.Is(err, fs.ErrNotExist):
 		return cannot("read", f.Path(rigName), err)
 	case found && m.RigSHA256 != r.Hash():
