@@ -69,11 +69,14 @@ type Quality struct {
 
 // Take analyses one recording that begins and ends about with the excitation and has
 // its sample rate.
-func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
+func (a *Analyser) Take(rec *Recording) *TakeAnalysis { return a.take(rec, a.dec.Len()) }
+
+// take looks for the direct sound in the first samples of the response only.
+func (a *Analyser) take(rec *Recording, first int) *TakeAnalysis {
 	out := &TakeAnalysis{}
 	rate := float64(a.exc.Rate)
 	full := a.dec.Impulse(rec.Mic)
-	peak := steepest(full)
+	peak := steepest(full[:min(first, len(full))])
 	if peak > a.dec.Len()-3*a.exc.Rate/4 {
 		peak -= a.dec.Len() // it came before the excitation
 	}

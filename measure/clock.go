@@ -2,6 +2,7 @@ package measure
 
 import (
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -15,19 +16,50 @@ type ClockOffset struct {
 	Relative    float64 // of its difference to the other takes
 }
 
-// Measurable reports whether the clocks certainly differ: by three standard
-// uncertainties, and by more than what the method is good for.
-func (c ClockOffset) Measurable() bool { return certain(c.Value, c.Uncertainty) }
+// Differ reports for each take whether its clocks certainly differ, or differ from
+// those of the other takes: by three standard uncertainties, and by more than what no
+// clock is blamed for.
+func Differ(clocks []ClockOffset) []bool {
+	var known []float64
+	for _, c := range clocks {
+		if !math.IsInf(c.Relative, 0) {
+			known = append(known, c.Value)
+		}
+	}
+	out := make([]bool, len(clocks))
+	for i, c := range clocks {
+		out[i] = certain(c.Value, c.Uncertainty) || certain(c.Value-Median(known), c.Relative)
+	}
+	return out
+}
 
 func certain(value, uncertainty float64) bool {
 	return math.Abs(value) > math.Max(3*uncertainty, leastOffset)
 }
 
+// OneClock makes one offset of those of takes that share a clock: their median.
+func OneClock(clocks []ClockOffset) []ClockOffset {
+	var values, doubts []float64
+	for _, c := range clocks {
+		if !math.IsInf(c.Relative, 0) {
+			values, doubts = append(values, c.Value), append(doubts, c.Uncertainty)
+		}
+	}
+	out := slices.Clone(clocks)
+	for i := range out {
+		if len(values) > 0 {
+			out[i] = ClockOffset{Value: Median(values), Uncertainty: Median(doubts)}
+		}
+	}
+	return out
+}
+
 const (
-	leastOffset  = 3e-6   // that no clock is blamed for
-	methodOffset = 0.3e-6 // what is left where nothing else is in doubt, standard
-	noClock      = 0.02   // rad rms left over by which a phase is a loudspeaker's own
-	clockMiddle  = 3000.0 // Hz, where the fit has its middle
+	leastOffset   = 3e-6   // that no clock is blamed for
+	believedClock = 100e-6 // what clocks differ by, standard, before anything is known
+	methodOffset  = 0.3e-6 // what is left where nothing else is in doubt, standard
+	noClock       = 0.02   // rad rms left over by which a phase is a loudspeaker's own
+	clockMiddle   = 3000.0 // Hz, where the fit has its middle
 )
 
 // ReadClocks reads the offsets of the clocks from what the phases of a set of takes
@@ -41,8 +73,8 @@ const (
 // with terms in 1/f and f³, which are what a magnitude outside the band would have
 // explained. What all takes have in common may be the loudspeaker's (a crossover is
 // not of minimum phase); what differs between takes is the clocks'. So the mean over
-// the takes gives the value of all with what is left as doubt, and each take's
-// difference to the mean its own.
+// the takes gives the value of all with what is left as doubt, joined with what is
+// believed of clocks (0 ± 100 ppm), and each take's difference to the mean its own.
 //
 // Source: the shape follows from A. Farina, AES 108th Convention, paper 5093 (2000),
 // with time scaled; it is checked against recordings made by scipy and sox.
@@ -81,6 +113,9 @@ func readAll(out []ClockOffset, takes []Excess, points int, l float64) {
 		mean[j] /= n
 	}
 	common, doubt := together(hz, mean, l)
+	if math.IsInf(doubt, 0) || math.IsNaN(doubt) {
+		return
+	}
 	for i, p := range phases {
 		if p == nil {
 			continue
@@ -102,7 +137,9 @@ func together(hz, mean []float64, l float64) (value, doubt float64) {
 	if _, _, rest := dispersion(hz, mean, l, 2); rest > noClock {
 		doubt = math.Max(doubt, math.Abs(value))
 	}
-	return value, doubt
+	// Joined with what is believed of clocks.
+	trust := sq(believedClock) / (sq(believedClock) + sq(doubt))
+	return trust * value, math.Sqrt(trust) * doubt
 }
 
 // withoutTurns takes off the multiple of π, a reversed polarity and turns lost in

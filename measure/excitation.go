@@ -113,3 +113,7 @@ func largestOf(x []float64) float64 {
 	}
 	return m
 }
+
+// SweepRate is the sweep's rate in s: L where it is known, else read from the times at
+// which the excitation passes its frequencies; 0 for what is no exponential sweep.
+func (e *Excitation) SweepRate() float64 { return e.L }

@@ -24,7 +24,11 @@ func (a *Analyser) HearAgain(rec *Recording, t Timing) (*TakeAnalysis, error) {
 	if err != nil {
 		return nil, err
 	}
-	out := a.Take(part)
+	first := a.dec.Len()
+	if t.Count > 0 { // it was found: something louder may be elsewhere
+		first = int(2.5 * margin * float64(a.exc.Rate))
+	}
+	out := a.take(part, first)
 	out.Timing = t
 	if !t.asItIs() {
 		a.asRecorded(out, rec)
@@ -58,7 +62,7 @@ func (t *TakeAnalysis) onRecordingsTime(rate float64) {
 func (a *Analyser) asRecorded(out *TakeAnalysis, rec *Recording) {
 	t := out.Timing
 	from := int(float64(t.Origin) * t.Step)
-	to := from + int(float64(a.Longest())*t.Step)
+	to := from + int(float64(len(a.exc.Samples))*t.Step)
 	part := rec.Mic[min(max(from, 0), len(rec.Mic)):min(max(to, 0), len(rec.Mic))]
 	out.Quality.Peak = peakOf(part)
 	if slices.Contains(out.Flags, Clipped) || slices.Contains(out.Flags, Silent) {

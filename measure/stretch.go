@@ -52,7 +52,7 @@ func (a *Analyser) locate(rec *Recording) (Timing, error) {
 		return t, err
 	}
 	t.Origin = int(math.Round((f.Find(rec.Mic).At - margin*float64(rec.SampleRate)) / t.Step))
-	t.Count = a.Longest()
+	t.Count = min(len(a.exc.Samples)+int(margin*float64(a.exc.Rate)), a.Longest())
 	return t, nil
 }
 
