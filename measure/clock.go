@@ -62,7 +62,7 @@ const (
 	clockMiddle   = 3000.0 // Hz, where the fit has its middle
 )
 
-// ReadClocks reads the offsets of the clocks from what the phases of a set of takes
+// ReadClocks reads the offsets of the clocks, what is taken off already included, from what the phases of a set of takes
 // have in excess, all of one sweep of the rate l in s. A recording clock that is ε fast
 // hears the frequency f, which the sweep passes at the time t(f), later by ε·t(f).
 // After deconvolution that is a phase of
@@ -74,7 +74,8 @@ const (
 // explained. What all takes have in common may be the loudspeaker's (a crossover is
 // not of minimum phase); what differs between takes is the clocks'. So the mean over
 // the takes gives the value of all with what is left as doubt, joined with what is
-// believed of clocks (0 ± 100 ppm), and each take's difference to the mean its own.
+// believed of clocks (0 ± 100 ppm), and each take's difference to the mean its own, as
+// far as takes differ by more than chance.
 //
 // Source: the shape follows from A. Farina, AES 108th Convention, paper 5093 (2000),
 // with time scaled; it is checked against recordings made by scipy and sox.
@@ -95,45 +96,95 @@ func ReadClocks(takes []Excess, l float64) []ClockOffset {
 }
 
 func readAll(out []ClockOffset, takes []Excess, points int, l float64) {
-	mean, n := make([]float64, points), 0.0
-	phases := make([][]float64, len(takes))
-	var hz []float64
+	var phases [][]float64
+	var at []int
+	var hz, taken []float64
 	for i, t := range takes {
-		if len(t.Hz) == 0 {
-			continue
+		if len(t.Hz) > 0 {
+			hz = t.Hz[:points]
+			phases, at, taken = append(phases, withoutTurns(hz, t.Phase[:points], l)), append(at, i), append(taken, t.Taken)
 		}
-		hz = t.Hz[:points]
-		phases[i] = withoutTurns(hz, t.Phase[:points], l)
-		for j, p := range phases[i] {
-			mean[j] += p
-		}
-		n++
 	}
-	for j := range mean {
-		mean[j] /= n
+	weights := slices.Repeat([]float64{1}, len(at))
+	// The first round tells what each take is worth.
+	_, doubts := differences(hz, phases, weighted(phases, weights), l)
+	for i, u := range doubts {
+		weights[i] = 1 / sq(u)
 	}
-	common, doubt := together(hz, mean, l)
+	mean, off := weighted(phases, weights), meanOf(taken, weights)
+	common, doubt := together(hz, mean, l, off)
 	if math.IsInf(doubt, 0) || math.IsNaN(doubt) {
 		return
 	}
-	for i, p := range phases {
-		if p == nil {
-			continue
+	own, doubts := differences(hz, phases, mean, l)
+	for n := range own {
+		own[n] += taken[n] - off
+	}
+	draw(own, doubts)
+	for n, i := range at {
+		out[i] = ClockOffset{common + own[n], math.Hypot(doubt, doubts[n]), doubts[n]}
+	}
+}
+
+// weighted is the mean of phases at each frequency.
+func weighted(phases [][]float64, weights []float64) []float64 {
+	out, column := make([]float64, len(phases[0])), make([]float64, len(phases))
+	for j := range out {
+		for i, p := range phases {
+			column[i] = p[j]
 		}
-		difference := make([]float64, points)
+		out[j] = meanOf(column, weights)
+	}
+	return out
+}
+
+func meanOf(x, weights []float64) float64 {
+	var sum, w float64
+	for i, v := range x {
+		sum, w = sum+weights[i]*v, w+weights[i]
+	}
+	return sum / w
+}
+
+// differences are the offsets of takes against a mean, with their uncertainties.
+func differences(hz []float64, phases [][]float64, mean []float64, l float64) (own, doubts []float64) {
+	for _, p := range phases {
+		d := make([]float64, len(p))
 		for j := range p {
-			difference[j] = p[j] - mean[j]
+			d[j] = p[j] - mean[j]
 		}
-		own, u := slope(hz, difference, l, 2)
-		u = math.Hypot(u, methodOffset)
-		out[i] = ClockOffset{common + own, math.Hypot(doubt, u), u}
+		value, u := slope(hz, d, l, 2)
+		own, doubts = append(own, value), append(doubts, math.Hypot(u, methodOffset))
+	}
+	return own, doubts
+}
+
+// draw pulls differences together as far as they scatter by chance: clocks that differ
+// among themselves by τ make the best guess of a take's difference τ²/(τ²+u²) of what
+// was found. Source: R. DerSimonian, N. Laird, Control. Clin. Trials 7, 177 (1986).
+func draw(own, doubts []float64) {
+	var w, w2, wx, q float64
+	for i, u := range doubts {
+		w, w2, wx = w+1/sq(u), w2+1/sq(sq(u)), wx+own[i]/sq(u)
+	}
+	mean := wx / w
+	for i, u := range doubts {
+		q += sq((own[i] - mean) / u)
+	}
+	between := math.Max(0, (q-float64(len(own)-1))/math.Max(w-w2/w, 1e-300))
+	for i, u := range doubts {
+		trust := between / (between + sq(u))
+		own[i] = mean + trust*(own[i]-mean)
+		doubts[i] = math.Sqrt(trust) * u
 	}
 }
 
 // together is the offset of all takes. What a loudspeaker leaves is no noise: as much
-// as is seen may hide in the value, and where much is seen, all of it.
-func together(hz, mean []float64, l float64) (value, doubt float64) {
+// as is seen may hide in the value, and where much is seen, all of it. Off is what is
+// taken off already.
+func together(hz, mean []float64, l, off float64) (value, doubt float64) {
 	value, doubt = slope(hz, mean, l, float64(len(hz)))
+	value += off
 	if _, _, rest := dispersion(hz, mean, l, 2); rest > noClock {
 		doubt = math.Max(doubt, math.Abs(value))
 	}

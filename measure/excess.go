@@ -14,6 +14,7 @@ import (
 type Excess struct {
 	Hz    []float64
 	Phase []float64
+	Taken float64 // the clock's offset that the recording was freed of, relative
 }
 
 // Where clocks are read, Hz: above what a short gate blurs, below the nulls of ports.

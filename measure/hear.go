@@ -41,6 +41,7 @@ func (a *Analyser) HearAgain(rec *Recording, t Timing) (*TakeAnalysis, error) {
 		told = out.wire
 	}
 	out.Excess = excess(told, a.exc.From, math.Min(a.exc.To, 0.42*float64(t.Rate)))
+	out.Excess.Taken = t.Clock
 	out.onRecordingsTime(float64(a.exc.Rate))
 	return out, nil
 }

@@ -76,8 +76,7 @@ func (a *analysed) settleClocks(ctx context.Context, base *measure.Analyser) err
 	return nil
 }
 
-// readClocks are the offsets of the accepted takes' clocks, what is taken off already
-// included.
+// readClocks are the offsets of the accepted takes' clocks.
 func (a *analysed) readClocks() (at []int, clocks []measure.ClockOffset) {
 	at, placed := a.acceptedTakes()
 	var phases []measure.Excess
@@ -85,9 +84,6 @@ func (a *analysed) readClocks() (at []int, clocks []measure.ClockOffset) {
 		phases = append(phases, p.Analysis.Excess)
 	}
 	clocks = measure.ReadClocks(phases, a.exc.SweepRate())
-	for n := range clocks {
-		clocks[n].Value += placed[n].Analysis.Timing.Clock
-	}
 	if benchOf(a.rig).DecideClock(placed) == measure.ClockCommon {
 		clocks = measure.OneClock(clocks)
 	}
