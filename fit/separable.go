@@ -34,7 +34,7 @@ type separable struct {
 }
 
 // layout says where each parameter is in the vector.
-type layout struct{ beta, spacing, setback, radius, speed, tape, delay, n int }
+type layout struct{ beta, spacing, setback, radius, speed, tape, delay, drift, n int }
 
 func newSeparable(d *Dataset, m Model) *separable {
 	p := &separable{data: d, model: m}
@@ -43,6 +43,7 @@ func newSeparable(d *Dataset, m Model) *separable {
 	if d.FreeClock {
 		p.at.n += n - 1 // the first response's delay is part of S
 	}
+	p.layDrifts()
 	p.sigma = make([][]float64, n)
 	p.h = make([][]complex128, n)
 	for i := range d.Points {
@@ -78,11 +79,11 @@ func (p *separable) delayOf(x []float64, i int) float64 {
 func (p *separable) fill(h [][]complex128, x []float64) {
 	e := newEvaluator(p.model, p.acoustics(x), p.data.Hz)
 	for i := range p.data.Points {
-		r, t := p.distance(x, i), p.delayOf(x, i)
+		r, t, drift := p.distance(x, i), p.delayOf(x, i), p.driftOf(x, i)
 		for j, f := range p.data.Hz {
 			v := scaled(e.output(j, r), 1/p.sigma[i][j])
-			if t != 0 {
-				v *= cmplx.Rect(1, -2*math.Pi*f*t)
+			if t != 0 || drift != 0 {
+				v *= cmplx.Rect(1, -2*math.Pi*f*(t+drift*p.data.passes(f)))
 			}
 			h[i][j] = v
 		}
@@ -107,7 +108,7 @@ func (p *separable) evaluate(x []float64) {
 func (p *separable) observations() int { return 2 * len(p.data.Points) * len(p.data.Hz) }
 
 // size is the number of residuals: both quadratures, then the priors.
-func (p *separable) size() int { return p.observations() + 3 + len(p.data.Points) }
+func (p *separable) size() int { return p.observations() + 3 + len(p.data.Points) + p.drifts() }
 
 func (p *separable) residuals(dst, x []float64) {
 	p.evaluate(x)
@@ -126,6 +127,7 @@ func (p *separable) residuals(dst, x []float64) {
 	for i, pt := range d.Points {
 		dst[at+3+i] = x[p.at.tape+i] / pt.Tape
 	}
+	p.driftPriors(dst[at+3+len(d.Points):], x)
 }
 
 // jacobian is Kaufman's, with forward differences of the model only.
@@ -145,6 +147,7 @@ func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	if p.data.FreeClock {
 		p.delays(dst)
 	}
+	p.driftColumns(dst)
 	at, d := p.observations(), p.data
 	dst.Set(at, p.at.setback, 1/d.SetbackUncertainty)
 	dst.Set(at+1, p.at.radius, 1/d.RadiusUncertainty)
@@ -269,6 +272,9 @@ func (p *separable) scale() []float64 {
 	s[p.at.setback], s[p.at.radius], s[p.at.speed] = d.SetbackUncertainty, d.RadiusUncertainty, d.SpeedUncertainty
 	for i, pt := range d.Points {
 		s[p.at.tape+i] = pt.Tape
+	}
+	for i := range p.drifts() {
+		s[p.at.drift+i] = math.Max(d.Points[i].Clock, surelyNoDrift)
 	}
 	return s
 }

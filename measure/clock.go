@@ -55,12 +55,15 @@ func OneClock(clocks []ClockOffset) []ClockOffset {
 }
 
 const (
-	leastOffset   = 3e-6   // that no clock is blamed for
-	believedClock = 100e-6 // what clocks differ by, standard, before anything is known
-	methodOffset  = 0.3e-6 // what is left where nothing else is in doubt, standard
-	noClock       = 0.02   // rad rms left over by which a phase is a loudspeaker's own
-	clockMiddle   = 3000.0 // Hz, where the fit has its middle
+	leastOffset  = 3e-6   // that no clock is blamed for
+	methodOffset = 0.3e-6 // what is left where nothing else is in doubt, standard
+	noClock      = 0.02   // rad rms left over by which a phase is a loudspeaker's own
+	clockMiddle  = 3000.0 // Hz, where the fit has its middle
 )
+
+// BelievedClock is what clocks differ by, standard and relative, before anything is
+// known.
+const BelievedClock = 100e-6
 
 // ReadClocks reads the offsets of the clocks, what is taken off already included, from what the phases of a set of takes
 // have in excess, all of one sweep of the rate l in s. A recording clock that is ε fast
@@ -175,7 +178,7 @@ func draw(own, doubts []float64) {
 	for i, u := range doubts {
 		trust := between / (between + sq(u))
 		own[i] = mean + trust*(own[i]-mean)
-		doubts[i] = math.Sqrt(trust) * u
+		doubts[i] = math.Max(math.Sqrt(trust)*u, methodOffset)
 	}
 }
 
@@ -189,7 +192,7 @@ func together(hz, mean []float64, l, off float64) (value, doubt float64) {
 		doubt = math.Max(doubt, math.Abs(value))
 	}
 	// Joined with what is believed of clocks.
-	trust := sq(believedClock) / (sq(believedClock) + sq(doubt))
+	trust := sq(BelievedClock) / (sq(BelievedClock) + sq(doubt))
 	return trust * value, math.Sqrt(trust) * doubt
 }
 

@@ -371,7 +371,7 @@ func (a *analysed) commonStart() float64 {
 func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 	r := a.rig
 	d := &fit.Dataset{
-		Hz: hz, FreeClock: clock == measure.ClockFree,
+		Hz: hz, FreeClock: clock == measure.ClockFree, SweepRate: a.exc.SweepRate(),
 		Setback: r.Capsule.Setback, SetbackUncertainty: r.Capsule.SetbackUncertainty,
 		Radius: r.Source.Radius, RadiusUncertainty: r.Source.RadiusUncertainty,
 		Speed: r.Air.SpeedOfSound(), SpeedUncertainty: r.Air.SpeedUncertainty(),
@@ -381,7 +381,7 @@ func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 	}
 	for _, g := range a.groups {
 		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty,
-			Value: g.average.Value, Variance: g.average.Variance}
+			Value: g.average.Value, Variance: g.average.Variance, Clock: g.clockLeft()}
 		d.Points = append(d.Points, p)
 	}
 	return d

@@ -100,6 +100,18 @@ func (a *analysed) correct(with *measure.Analyser, i int) error {
 	return a.hearWith(i, func(rec *measure.Recording) (*measure.TakeAnalysis, error) { return with.HearAgain(rec, t) })
 }
 
+// clockLeft is the standard uncertainty of the clock's offset in the average of a
+// group, against the other groups. One that could not be read may be anything that
+// clocks are.
+func (g *group) clockLeft() float64 {
+	var sum float64
+	for _, h := range g.takes {
+		u := math.Min(h.clock.Relative, measure.BelievedClock)
+		sum += u * u
+	}
+	return math.Sqrt(sum) / float64(len(g.takes))
+}
+
 // flagClocks says what was found of clocks. Nothing of it rejects a take.
 func (a *analysed) flagClocks() {
 	at, placed := a.acceptedTakes()
