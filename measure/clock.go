@@ -16,8 +16,8 @@ type ClockOffset struct {
 	Relative    float64 // of its difference to the other takes
 }
 
-// Differ reports for each take whether its clocks certainly differ, or differ from
-// those of the other takes: by three standard uncertainties, and by more than what no
+// Differ reports for each take whether its clocks certainly differ or, where that
+// cannot be told well, differ from those of the other takes: by three standard uncertainties, and by more than what no
 // clock is blamed for.
 func Differ(clocks []ClockOffset) []bool {
 	var known []float64
@@ -28,7 +28,8 @@ func Differ(clocks []ClockOffset) []bool {
 	}
 	out := make([]bool, len(clocks))
 	for i, c := range clocks {
-		out[i] = certain(c.Value, c.Uncertainty) || certain(c.Value-Median(known), c.Relative)
+		out[i] = certain(c.Value, c.Uncertainty) ||
+			c.Uncertainty > wellKnown && certain(c.Value-Median(known), c.Relative)
 	}
 	return out
 }
@@ -56,8 +57,10 @@ func OneClock(clocks []ClockOffset) []ClockOffset {
 
 const (
 	leastOffset  = 3e-6   // that no clock is blamed for
+	wellKnown    = 20e-6  // standard uncertainty of a value that speaks for itself
+	leastPoints  = 10     // of a phase that can be read
 	methodOffset = 0.3e-6 // what is left where nothing else is in doubt, standard
-	noClock      = 0.02   // rad rms left over by which a phase is a loudspeaker's own
+	noClock      = 0.005  // rad rms left over by which a phase is a loudspeaker's own
 	clockMiddle  = 3000.0 // Hz, where the fit has its middle
 )
 
@@ -91,7 +94,7 @@ func ReadClocks(takes []Excess, l float64) []ClockOffset {
 			points = min(points, len(t.Hz))
 		}
 	}
-	if !(l > 0) || points == math.MaxInt {
+	if !(l > 0) || points == math.MaxInt || points < leastPoints {
 		return out
 	}
 	readAll(out, takes, points, l)
@@ -234,7 +237,7 @@ func dispersion(hz, phase []float64, l float64, extra int) (value, se, rest floa
 		a.SetRow(i, terms[:columns])
 	}
 	var x, r mat.VecDense
-	if len(hz) < columns+4 || x.SolveVec(a, b) != nil {
+	if x.SolveVec(a, b) != nil {
 		return 0, math.Inf(1), math.Inf(1)
 	}
 	r.MulVec(a, &x)

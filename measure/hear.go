@@ -59,11 +59,12 @@ func (t *TakeAnalysis) onRecordingsTime(rate float64) {
 	}
 }
 
-// asRecorded looks for what interpolation hides: samples at full scale.
+// asRecorded looks for what interpolation hides: samples at full scale, while the sweep
+// is heard.
 func (a *Analyser) asRecorded(out *TakeAnalysis, rec *Recording) {
 	t := out.Timing
-	from := int(float64(t.Origin) * t.Step)
-	to := from + int(float64(len(a.exc.Samples))*t.Step)
+	arrival := float64(t.Origin) + out.Impulse.Arrival
+	from, to := int((float64(a.exc.Begin)+arrival)*t.Step), int((float64(a.exc.End)+arrival)*t.Step)
 	part := rec.Mic[min(max(from, 0), len(rec.Mic)):min(max(to, 0), len(rec.Mic))]
 	out.Quality.Peak = peakOf(part)
 	if slices.Contains(out.Flags, Clipped) || slices.Contains(out.Flags, Silent) {
@@ -82,22 +83,28 @@ func (t *TakeAnalysis) flag(f Flag, format string, args ...any) {
 // cutSlack is what an arrival may be wrong by, s.
 const cutSlack = 0.001
 
+// likeSome is the likeness that nothing but a part of the sweep has.
+const likeSome = 0.3
+
 // whole flags a take in which the sweep is not heard from its beginning to its end.
 func (a *Analyser) whole(out *TakeAnalysis, rec *Recording) error {
-	if slices.Contains(out.Flags, Silent) {
-		return nil
-	}
+	silent := slices.Contains(out.Flags, Silent)
 	early, late := a.missing(out.Timing, out.Impulse.Arrival, len(rec.Mic))
-	if math.Max(early, late) <= cutSlack {
+	if !silent && math.Max(early, late) <= cutSlack {
 		return nil
 	}
-	if out.Timing.asItIs() {
-		// A response that comes so early may have gone round: look where it is.
-		f, err := a.finder(rec.SampleRate)
-		if err != nil {
-			return err
-		}
-		early, late = a.missing(out.Timing, f.Find(rec.Mic).At, len(rec.Mic))
+	// The response of a part is no arrival, and one that comes early may have gone
+	// round in the transform: look where it is.
+	f, err := a.finder(rec.SampleRate)
+	if err != nil {
+		return err
+	}
+	place := f.Find(rec.Mic)
+	if place.Likeness > likeSome {
+		early, late = a.missing(Timing{Step: out.Timing.Step}, place.At/out.Timing.Step, len(rec.Mic))
+	}
+	if silent && (place.Likeness < likeSome || math.Max(early, late) <= cutSlack) {
+		return nil
 	}
 	out.Flags, out.Reasons = nil, nil // they follow from it
 	if early > late {
