@@ -33,6 +33,7 @@ func (a *Analysis) alone(i int) Alone {
 		return nothing
 	}
 	l := newLone(a.Data, i, others)
+	l.point = a.Data.steadied(i, best, others)
 	free, ok := l.solve(best.Acoustics)
 	if !ok {
 		return nothing

@@ -75,6 +75,7 @@ func (a *Analysis) budget() Budget {
 		line("setback", "B", d.SetbackUncertainty, "m", bySetback, known),
 		line("source radius", "B", d.RadiusUncertainty, "m", byRadius, known),
 		line("speed of sound", "B", d.SpeedUncertainty, "m/s", bySpeed, known),
+		line("clocks", "B", 1e6*d.typicalClock(), "ppm", byClock, known),
 		{"model form", "B", float64(len(a.equals()) - 1), "other models", a.formUncertainty(mixOf), a.formUncertainty(spacingOf), doubtful},
 		{"band", "B", a.bandSize(), "Hz", a.bandUncertainty(mixOf, byMixSE), a.bandUncertainty(spacingOf, bySpacingSE), doubtful},
 		{"method", "B", d.MethodMix, "1", d.MethodMix, a.methodSpacing(), known},
@@ -133,6 +134,15 @@ func (d *Dataset) typicalNoise() float64 {
 		}
 	}
 	return math.Sqrt(sum / n)
+}
+
+// typicalClock is the root of the mean square of what is in doubt about the clocks.
+func (d *Dataset) typicalClock() float64 {
+	var sum float64
+	for _, p := range d.Points {
+		sum += p.Clock * p.Clock
+	}
+	return math.Sqrt(sum / float64(len(d.Points)))
 }
 
 // typicalTape is the root of the mean square of the distances' uncertainties.

@@ -30,10 +30,10 @@ func TestContributionsAddUp(t *testing.T) {
 		}
 	}
 	for c, p := range j.parts {
-		if cause(c) == byRoom && p.beta != 0 {
-			t.Errorf("a room contributes %g where none was told", p.beta)
+		if (cause(c) == byRoom || cause(c) == byClock) && p.beta != 0 {
+			t.Errorf("cause %d contributes %g where none was told", c, p.beta)
 		}
-		if cause(c) != byRoom && !(p.beta > 0) {
+		if cause(c) != byRoom && cause(c) != byClock && !(p.beta > 0) {
 			t.Errorf("cause %d contributes nothing", c)
 		}
 	}

@@ -17,6 +17,7 @@ const (
 	bySetback
 	byRadius
 	bySpeed
+	byClock
 	causes
 )
 
@@ -68,6 +69,9 @@ func (p *separable) contributions(x []float64, c *mat.SymDense) [causes]spread {
 	add(bySpeed, of(row+2), 1)
 	for i := range p.data.Points {
 		add(byTape, of(row+3+i), 1)
+	}
+	for i := range p.drifting {
+		add(byClock, of(row+3+len(p.data.Points)+i), 1)
 	}
 	return out
 }

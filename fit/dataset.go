@@ -17,6 +17,7 @@ type Dataset struct {
 	Radius, RadiusUncertainty   float64 // b, m
 	Speed, SpeedUncertainty     float64 // c, m/s
 	FreeClock                   bool    // every response has a delay of its own
+	SweepRate                   float64 // L of the sweep in s, where Point.Clock counts
 
 	// What a response differs from any first-order model besides its noise.
 	// Unexplained is relative to its magnitude: small movements, the capsule's own
@@ -45,6 +46,7 @@ type Point struct {
 	Tape     float64      // standard uncertainty of Nominal, m
 	Value    []complex128 // on Hz
 	Variance []float64    // E|error|² of Value: noise
+	Clock    float64      // standard uncertainty of what is left of its clock's offset, relative; 0 none
 }
 
 // Validate reports why a dataset cannot be fitted.

@@ -19,6 +19,7 @@ type Joint struct {
 	Setback   float64
 	Distances []float64 // fitted, source to capsule centre, m
 	Delays    []float64 // of each response, s; zero with a common clock
+	Drifts    []float64 // what was left of each clock's offset, relative
 
 	ChiSquare float64 // of the data, priors left out
 	Freedom   int     // degrees of freedom of the data
@@ -232,5 +233,6 @@ func (j *Joint) places(p *separable, x []float64) {
 	for i := range p.data.Points {
 		j.Distances = append(j.Distances, p.distance(x, i))
 		j.Delays = append(j.Delays, p.delayOf(x, i))
+		j.Drifts = append(j.Drifts, p.driftOf(x, i))
 	}
 }

@@ -79,6 +79,17 @@ type TakeResult struct {
 	SNRDB    float64        `json:"snr_db"`
 	Arrival  float64        `json:"arrival_s"` // of the direct sound, from the start of the sweep, latency included
 	Reason   string         `json:"reason,omitempty"`
+	Clock    *TakeClock     `json:"clock,omitempty"`             // of the recorder against the player, where it could be read
+	Rate     int            `json:"resampled_from_hz,omitempty"` // the recording's sample rate where it is not the sweep's
+}
+
+// TakeClock is by how much a recording's clock was faster than the playback's, in
+// parts in a million.
+type TakeClock struct {
+	Offset           float64 `json:"offset_ppm"`
+	Expanded         float64 `json:"expanded_ppm"`          // k = 2
+	RelativeExpanded float64 `json:"relative_expanded_ppm"` // k = 2, against the other takes
+	Corrected        bool    `json:"corrected"`
 }
 
 // FitSummary says how and how well the joint fit was made.

@@ -22,11 +22,12 @@ import (
 //
 // What is known beforehand enters as pseudo-observations (value − prior)/u.
 type separable struct {
-	data  *Dataset
-	model Model
-	at    layout
-	sigma [][]float64 // [point][frequency], of one quadrature
-	nodes []int       // rings of the source for each point: the same whatever x is
+	data     *Dataset
+	model    Model
+	at       layout
+	sigma    [][]float64 // [point][frequency], of one quadrature
+	drifting int         // number of drifts
+	nodes    []int       // rings of the source for each point: the same whatever x is
 
 	// Filled by evaluate, for the last x.
 	h     [][]complex128 // [point][frequency], divided by sigma
@@ -36,7 +37,7 @@ type separable struct {
 }
 
 // layout says where each parameter is in the vector.
-type layout struct{ beta, spacing, setback, radius, speed, tape, delay, gain, n int }
+type layout struct{ beta, spacing, setback, radius, speed, tape, delay, drift, gain, n int }
 
 func newSeparable(d *Dataset, m Model) *separable {
 	p := &separable{data: d, model: m}
@@ -45,6 +46,7 @@ func newSeparable(d *Dataset, m Model) *separable {
 	if d.FreeClock {
 		p.at.n += n - 1 // the first response's delay is part of S
 	}
+	p.layDrifts()
 	if p.at.gain = -1; d.louder > 0 {
 		p.at.gain = p.at.n
 		p.at.n++
@@ -118,9 +120,9 @@ func (p *separable) altered(h [][]complex128, x []float64) {
 		}
 	}
 	for i := range h {
-		if t := p.delayOf(x, i); t != 0 {
+		if t, drift := p.delayOf(x, i), p.driftOf(x, i); t != 0 || drift != 0 {
 			for j, f := range p.data.Hz {
-				h[i][j] *= cmplx.Rect(1, -2*math.Pi*f*t)
+				h[i][j] *= cmplx.Rect(1, -2*math.Pi*f*(t+drift*p.data.passes(f)))
 			}
 		}
 	}
@@ -149,7 +151,7 @@ func (p *separable) eliminate() {
 func (p *separable) observations() int { return 2 * len(p.data.Points) * len(p.data.Hz) }
 
 // size is the number of residuals: both quadratures, then the priors.
-func (p *separable) size() int { return p.observations() + 3 + len(p.data.Points) }
+func (p *separable) size() int { return p.observations() + 3 + len(p.data.Points) + p.drifts() }
 
 func (p *separable) residuals(dst, x []float64) {
 	p.evaluate(x)
@@ -173,6 +175,7 @@ func (p *separable) compare(dst, x []float64) {
 	for i, pt := range d.Points {
 		dst[at+3+i] = x[p.at.tape+i] / pt.Tape
 	}
+	p.driftPriors(dst[at+3+len(d.Points):], x)
 }
 
 // jacobian is Kaufman's, with differences of the model only: forward ones, but for
@@ -196,6 +199,7 @@ func (p *separable) jacobian(dst *mat.Dense, x []float64) {
 	if p.data.FreeClock {
 		p.delays(dst)
 	}
+	p.driftColumns(dst)
 	if p.at.gain >= 0 {
 		g, i := p.grid(), p.data.louder-1
 		for j, v := range p.h[i] {
@@ -372,6 +376,9 @@ func (p *separable) scale() []float64 {
 	s[p.at.setback], s[p.at.radius], s[p.at.speed] = d.SetbackUncertainty, d.RadiusUncertainty, d.SpeedUncertainty
 	for i, pt := range d.Points {
 		s[p.at.tape+i] = pt.Tape
+	}
+	for i := range p.drifts() {
+		s[p.at.drift+i] = math.Max(d.Points[i].Clock, surelyNoDrift)
 	}
 	if p.at.gain >= 0 {
 		s[p.at.gain] = 1

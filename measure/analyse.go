@@ -14,6 +14,9 @@ type Analyser struct {
 	dec *dsp.Deconvolver
 	// Band in which the signal-to-noise ratio is judged, Hz.
 	from, to float64
+
+	finders   map[int]*Finder // by sample rate
+	resampler *dsp.Resampler
 }
 
 // NewAnalyser prepares for recordings of up to longest samples. Signal to noise
@@ -38,6 +41,7 @@ func NewAnalyser(exc *Excitation, longest int, from, to float64) (*Analyser, err
 func (a *Analyser) Clone() *Analyser {
 	b := *a
 	b.dec = a.dec.Clone()
+	b.finders = nil
 	return &b
 }
 
@@ -47,6 +51,10 @@ type TakeAnalysis struct {
 	Quality Quality
 	Flags   []Flag
 	Reasons []string // for people, one for every flag
+	Timing  Timing   // what of the recording was analysed
+	Excess  Excess   // of the loopback's response where there is one, else of Impulse
+
+	wire *ImpulseResponse // of the loopback
 }
 
 // Quality are the figures by which a take is judged.
@@ -59,12 +67,16 @@ type Quality struct {
 	Second  float64 // second harmonic's level relative to the fundamental; NaN when not known
 }
 
-// Take analyses one recording.
-func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
+// Take analyses one recording that begins and ends about with the excitation and has
+// its sample rate.
+func (a *Analyser) Take(rec *Recording) *TakeAnalysis { return a.take(rec, a.dec.Len()) }
+
+// take looks for the direct sound in the first samples of the response only.
+func (a *Analyser) take(rec *Recording, first int) *TakeAnalysis {
 	out := &TakeAnalysis{}
 	rate := float64(a.exc.Rate)
 	full := a.dec.Impulse(rec.Mic)
-	peak := steepest(full)
+	peak := steepest(full[:min(first, len(full))])
 	if peak > a.dec.Len()-3*a.exc.Rate/4 {
 		peak -= a.dec.Len() // it came before the excitation
 	}
@@ -72,8 +84,8 @@ func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
 	at, clarity := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
 	ir.Arrival = float64(ir.First) + at
 	ir.Noise = a.noise(rec.Mic, ir.Arrival)
-	if rec.Loopback != nil {
-		ir.Latency = a.latency(rec.Loopback)
+	if out.wire = a.wireResponse(rec.Loopback); out.wire != nil {
+		ir.Latency = out.wire.Arrival
 	}
 	out.Impulse = ir
 	out.Quality = Quality{Peak: peakOf(rec.Mic), Arrival: (ir.Arrival - ir.Latency) / rate, Second: a.second(full, peak), Clarity: clarity}
@@ -82,17 +94,18 @@ func (a *Analyser) Take(rec *Recording) *TakeAnalysis {
 	return out
 }
 
-// latency is the delay of a loopback recording in samples, fractional; 0 for a
-// loopback that carries nothing.
-func (a *Analyser) latency(loopback []float32) float64 {
-	if peakOf(loopback) < 1e-4 {
-		return 0
+// wireResponse is that of a loopback recording, its arrival fractional; nil for one
+// that carries nothing.
+func (a *Analyser) wireResponse(loopback []float32) *ImpulseResponse {
+	if loopback == nil || peakOf(loopback) < 1e-4 {
+		return nil
 	}
 	rate := float64(a.exc.Rate)
 	full := a.dec.Impulse(loopback)
 	ir := cutOut(full, rate, steepest(full))
 	at, _ := directSound(ir.Samples, rate, a.exc.From, a.exc.To)
-	return float64(ir.First) + at
+	ir.Arrival = float64(ir.First) + at
+	return &ir
 }
 
 func peakOf(x []float32) float64 {

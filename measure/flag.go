@@ -10,6 +10,7 @@ const (
 	Clipped          Flag = "clipped"           // samples at full scale
 	LowSNR           Flag = "low-snr"           // the sweep does not stand clear of the noise
 	Dropout          Flag = "dropout"           // samples lost, repeated or zeroed in the middle
+	Incomplete       Flag = "incomplete"        // begins after the sweep has, or ends before it
 	Xrun             Flag = "xrun"              // the audio system reported lost data
 	Silent           Flag = "silent"            // nothing arrived
 	Hum              Flag = "hum"               // mains hum dominates the noise
@@ -23,7 +24,7 @@ const (
 // Rejects reports whether a take with this flag is unfit for the analysis.
 func (f Flag) Rejects() bool {
 	switch f {
-	case Clipped, LowSNR, Dropout, Xrun, Silent:
+	case Clipped, LowSNR, Dropout, Incomplete, Xrun, Silent:
 		return true
 	}
 	return false

@@ -124,3 +124,9 @@ func noisePeak(ir *ImpulseResponse, lo, hi float64) float64 {
 	}
 	return 4 * math.Sqrt(4*power) // analytic signal: twice the amplitude, one side
 }
+
+// earliestReflection is the first of what lookAfter finds.
+func earliestReflection(ir *ImpulseResponse, from, to float64) float64 {
+	reflection, _ := lookAfter(ir, from, to)
+	return reflection
+}

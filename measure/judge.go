@@ -35,7 +35,7 @@ func (a *Analyser) judge(t *TakeAnalysis, rec *Recording, full []float64) {
 		flag(Silent, "nothing of the sweep arrived: look at cable, input, phantom power, pad and loudspeaker")
 		return
 	}
-	if n := clipped(rec.Mic); n >= clipSamples {
+	if n := clipped(a.during(rec.Mic, t.Impulse.Arrival)); n >= clipSamples {
 		flag(Clipped, "%d samples at full scale: turn the preamplifier down", n)
 		return
 	}
@@ -60,6 +60,12 @@ func (a *Analyser) wireWhole(loopback []float32) bool {
 	full := a.dec.Impulse(loopback)
 	_, lost := a.dropout(loopback, full, float64(steepest(full)))
 	return !lost
+}
+
+// during is the part of a recording in which the sweep is heard.
+func (a *Analyser) during(mic []float32, arrival float64) []float32 {
+	from := min(max(a.exc.Begin+int(arrival), 0), len(mic))
+	return mic[from:min(max(a.exc.End+int(arrival), from), len(mic))]
 }
 
 func clipped(x []float32) int {

@@ -17,6 +17,7 @@ var sources = map[string]string{
 	"setback":        "setback of the capsule",
 	"source radius":  "radius of the loudspeaker",
 	"speed of sound": "air, by its speed of sound",
+	"clocks":         "clocks of player and recorder",
 	"model form":     "form of the model",
 	"band":           "band that is fitted",
 	"method":         "the method itself",

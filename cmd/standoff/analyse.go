@@ -37,6 +37,7 @@ type heard struct {
 	flags    []measure.Flag
 	reasons  []string
 	accepted bool
+	clock    measure.ClockOffset // of its recorder
 }
 
 // group are the accepted takes at one distance.
@@ -65,6 +66,7 @@ func analyse(ctx context.Context, f *session.Folder, version string) (*analysed,
 		return nil, err
 	}
 	a.compare()
+	a.flagClocks()
 	if err := a.judge(); err != nil {
 		return nil, err
 	}
@@ -126,10 +128,20 @@ func (a *analysed) inParallel(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
-	base, err := measure.NewAnalyser(a.exc, len(first.Mic), a.rig.Fit.From, a.rig.Fit.To)
+	// In what is longer the excitation is looked for.
+	longest := min(len(first.Mic), len(a.exc.Samples)+a.exc.Rate)
+	base, err := measure.NewAnalyser(a.exc, longest, a.rig.Fit.From, a.rig.Fit.To)
 	if err != nil {
 		return err
 	}
+	if err := a.each(ctx, base, a.hear); err != nil {
+		return err
+	}
+	return a.settleClocks(ctx, base)
+}
+
+// each does something with every take, with an analyser for each worker.
+func (a *analysed) each(ctx context.Context, base *measure.Analyser, do func(*measure.Analyser, int) error) error {
 	jobs := make(chan int)
 	g, ctx := errgroup.WithContext(ctx)
 	g.Go(func() error {
@@ -147,7 +159,7 @@ func (a *analysed) inParallel(ctx context.Context) error {
 		g.Go(func() error {
 			mine := base.Clone()
 			for i := range jobs {
-				if err := a.hear(mine, i); err != nil {
+				if err := do(mine, i); err != nil {
 					return err
 				}
 			}
@@ -155,30 +167,6 @@ func (a *analysed) inParallel(ctx context.Context) error {
 		})
 	}
 	return g.Wait()
-}
-
-// hear analyses take i. A take that is longer than the others gets an analyser
-// of its own.
-func (a *analysed) hear(with *measure.Analyser, i int) error {
-	h := &a.takes[i]
-	rec, err := a.folder.Load(h.take)
-	if err != nil {
-		return err
-	}
-	if rec.SampleRate != a.exc.Rate {
-		return fmt.Errorf("%s: recorded at %d Hz, the excitation has %d Hz", a.folder.Path(h.take.File), rec.SampleRate, a.exc.Rate)
-	}
-	rec.Overflows, rec.Underflows = h.take.Overflows, h.take.Underflows
-	if len(rec.Mic) > with.Longest() {
-		if with, err = measure.NewAnalyser(a.exc, len(rec.Mic), a.rig.Fit.From, a.rig.Fit.To); err != nil {
-			return err
-		}
-	}
-	h.analysis = with.Take(rec)
-	h.flags = slices.Clone(h.analysis.Flags)
-	h.reasons = slices.Clone(h.analysis.Reasons)
-	h.accepted = !slices.ContainsFunc(h.flags, measure.Flag.Rejects)
-	return nil
 }
 
 // bench is what the comparison of distances needs to know.
@@ -465,7 +453,7 @@ func (a *analysed) commonStart() float64 {
 func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 	r := a.rig
 	d := &fit.Dataset{
-		Hz: hz, FreeClock: clock == measure.ClockFree,
+		Hz: hz, FreeClock: clock == measure.ClockFree, SweepRate: a.exc.SweepRate(),
 		Setback: r.Capsule.Setback + r.Source.Centre, SetbackUncertainty: math.Hypot(r.Capsule.SetbackUncertainty, r.Source.CentreUncertainty),
 		Radius: r.Source.Radius, RadiusUncertainty: r.Source.RadiusUncertainty,
 		Speed: r.Air.SpeedOfSound(), SpeedUncertainty: r.Air.SpeedUncertainty(),
@@ -479,7 +467,7 @@ func (a *analysed) dataset(hz []float64, clock string) *fit.Dataset {
 			continue
 		}
 		p := fit.Point{Label: g.distance.Label, Nominal: g.distance.Metres, Tape: r.DistanceUncertainty,
-			Value: g.average.Value, Variance: g.average.Variance}
+			Value: g.average.Value, Variance: g.average.Variance, Clock: g.clockLeft()}
 		if g.odd != nil {
 			p.Tape = freePlace
 		}

@@ -46,8 +46,7 @@ func (c *importCmd) Run(e *env) error {
 	if err != nil {
 		return err
 	}
-	recs, err := c.load(r, files)
-	if err != nil {
+	if err := c.check(r, files); err != nil {
 		return err
 	}
 	f, err := session.OpenOrCreate(c.Into, r, session.Options{Version: version, Tag: c.Tag, Serial: c.Serial, Recorder: "recordings made elsewhere"})
@@ -59,7 +58,7 @@ func (c *importCmd) Run(e *env) error {
 	if err := c.excitation(r, f); err != nil {
 		return err
 	}
-	if err := e.adopt(f, files, recs); err != nil {
+	if err := e.adopt(f, r, files); err != nil {
 		return err
 	}
 	e.say("analysing %d takes", len(f.Takes()))
@@ -105,21 +104,23 @@ func placeOf(r *rig.Rig, label string) (measure.Distance, bool) {
 	return r.Distances[i], true
 }
 
-// load reads all files before anything is written.
-func (c *importCmd) load(r *rig.Rig, files []placedFile) ([]*measure.Recording, error) {
-	var out []*measure.Recording
+// check reads all files before anything is written, one at a time: a recording may be
+// minutes long.
+func (c *importCmd) check(r *rig.Rig, files []placedFile) error {
 	for _, f := range files {
-		rec, err := replay.Load(f.path, r.Audio.InputChannel, r.Audio.LoopbackChannel)
+		rec, err := loadFile(r, f)
 		if err != nil {
-			return nil, err
+			return err
 		}
-		if rec.SampleRate != r.Audio.SampleRate {
-			return nil, cure(fmt.Errorf("%s: %d Hz, but the rig's audio.sample_rate is %d Hz", f.path, rec.SampleRate, r.Audio.SampleRate),
-				"say in the rig what the recordings have; the sweep that was played must have had it too")
+		if err := rateServes(f.path, rec.SampleRate, r.Fit.To); err != nil {
+			return err
 		}
-		out = append(out, rec)
 	}
-	return out, nil
+	return nil
+}
+
+func loadFile(r *rig.Rig, f placedFile) (*measure.Recording, error) {
+	return replay.Load(f.path, r.Audio.InputChannel, r.Audio.LoopbackChannel)
 }
 
 // excitation keeps a sweep of the user's own in the folder.
@@ -142,10 +143,14 @@ func (c *importCmd) excitation(r *rig.Rig, f *session.Folder) error {
 }
 
 // adopt copies recordings into the folder, except those that are there.
-func (e *env) adopt(f *session.Folder, files []placedFile, recs []*measure.Recording) error {
-	for i, file := range files {
+func (e *env) adopt(f *session.Folder, r *rig.Rig, files []placedFile) error {
+	for _, file := range files {
 		name := filepath.Base(file.path)
-		known, err := alreadyThere(f, file.distance, recs[i])
+		rec, err := loadFile(r, file)
+		if err != nil {
+			return err
+		}
+		known, err := alreadyThere(f, file.distance, rec)
 		if err != nil {
 			return err
 		}
@@ -153,7 +158,7 @@ func (e *env) adopt(f *session.Folder, files []placedFile, recs []*measure.Recor
 			e.say("%s: %s is already there", file.distance.Label, name)
 			continue
 		}
-		take, err := f.AddTake(file.distance, name, recs[i])
+		take, err := f.AddTake(file.distance, name, rec)
 		if err != nil {
 			return err
 		}
@@ -164,7 +169,7 @@ func (e *env) adopt(f *session.Folder, files []placedFile, recs []*measure.Recor
 
 func alreadyThere(f *session.Folder, d measure.Distance, rec *measure.Recording) (bool, error) {
 	for _, t := range f.Takes() {
-		if t.Distance != d.Label {
+		if t.Distance != d.Label || t.SampleRate != rec.SampleRate {
 			continue
 		}
 		old, err := f.Load(t)

@@ -23,12 +23,14 @@ func (a *analysed) complete(version string) {
 		r.Takes = append(r.Takes, fit.TakeResult{
 			File: h.take.File, Distance: h.take.Distance, Number: h.take.Number, Accepted: h.accepted,
 			Flags: orEmpty(h.flags), PeakDB: dB(q.Peak), SNRDB: snrDB(q), Arrival: q.Arrival, Reason: joinReasons(h.reasons),
+			Clock: h.clockResult(), Rate: h.resampledFrom(a.exc),
 		})
 	}
 	r.Distances = a.allDistances(r.Distances)
 	r.Warnings = append(r.Warnings, a.oddWarnings()...)
 	r.Warnings = append(r.Warnings, a.placeWarnings()...)
 	r.Warnings = append(r.Warnings, a.takeWarnings()...)
+	r.Warnings = append(r.Warnings, a.clockWarnings()...)
 	a.result = r
 }
 
@@ -161,8 +163,11 @@ func (a *analysed) placeWarnings() []measure.Warning {
 	return out
 }
 
+// notes are warnings that ask for nothing to be done.
+var notes = []string{"form-not-told", string(measure.Unsynchronised), clockCorrected, rateResampled}
+
 // needsALook reports whether a person should look at a result: anything but a
 // note.
 func needsALook(r *fit.Result) bool {
-	return slices.ContainsFunc(r.Warnings, func(w measure.Warning) bool { return w.Code != "form-not-told" })
+	return slices.ContainsFunc(r.Warnings, func(w measure.Warning) bool { return !slices.Contains(notes, w.Code) })
 }

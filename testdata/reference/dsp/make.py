@@ -1,6 +1,6 @@
 #!/usr/bin/env python3
-"""Writes signal.csv, dtft.csv, welch.csv, envelope.csv and windows.csv: what
-scipy.signal makes of a seeded signal.
+"""Writes signal.csv, dtft.csv, welch.csv, envelope.csv, windows.csv, band.csv and
+resampled.csv: what scipy.signal makes of seeded signals.
 
     make.py [folder]      (default: the folder of this file)
 
@@ -17,6 +17,7 @@ RATE = 8000.0
 ORIGIN = 37.25  # samples
 BAND = (600.0, 1500.0)  # Hz, of the envelope
 SEGMENTS = (64, 250, 512)
+RATIOS = ((160, 147), (2, 1), (5001, 5000), (4999, 5000))  # new rate to old
 
 
 def write(folder, name, header, rows):
@@ -55,6 +56,21 @@ def envelope(x):
     return np.abs(signal.hilbert(y))[: len(x)]
 
 
+def band_limited(n):
+    """Noise without anything above 0.44 of the rate, silent at both ends."""
+    rng = np.random.default_rng(53)
+    taps = signal.firwin(401, 0.84, window=("kaiser", 10.0))  # of the Nyquist frequency
+    x = np.convolve(rng.standard_normal(n - 800), taps)
+    return np.array([float(f"{v:.9g}") for v in np.pad(x, 200)])
+
+
+def resample(x, up, down):
+    """resample_poly with a filter ten times as steep as its own."""
+    rate = max(up, down)
+    taps = signal.firwin(2 * 200 * rate + 1, 1 / rate, window=("kaiser", 12.0))
+    return signal.resample_poly(x, up, down, window=taps)
+
+
 def main(folder):
     x = observe()
     write(folder, "signal.csv", ["x"], ([v] for v in x))
@@ -81,6 +97,14 @@ def main(folder):
     gate = np.concatenate([up[:rise], np.ones(flat), down[fall:]])
     rows += [("gate", rise, fall, i, v) for i, v in enumerate(gate)]
     write(folder, "windows.csv", ["window", "first", "second", "sample", "value"], rows)
+
+    x = band_limited(1600)
+    write(folder, "band.csv", ["x"], ([v] for v in x))
+    rows = []
+    for up, down in RATIOS:
+        y = resample(x, up, down)
+        rows += [(up, down, i, round(y[i], 9) + 0.0) for i in range(0, len(y), 3)]
+    write(folder, "resampled.csv", ["up", "down", "sample", "value"], rows)
 
 
 if __name__ == "__main__":
