@@ -43,8 +43,15 @@ func TestOddDistances(t *testing.T) {
 			}
 			a := measured(t, r, filepath.Join(t.TempDir(), "s"))
 			for _, d := range a.result.Distances {
-				if has := slices.Contains(d.Flags, c.flag); has != (d.Label == c.at) || len(d.Flags) > 1 || !has && len(d.Flags) > 0 {
-					t.Errorf("%s has the flags %v", d.Label, d.Flags)
+				want := []measure.Flag{}
+				if c.free {
+					want = append(want, measure.Unsynchronised)
+				}
+				if d.Label == c.at {
+					want = append(want, c.flag)
+				}
+				if !slices.Equal(d.Flags, want) {
+					t.Errorf("%s has the flags %v, want %v", d.Label, d.Flags, want)
 				}
 			}
 			for _, warning := range a.result.Warnings {
