@@ -245,7 +245,7 @@ func (a *Analysis) candidates() []Candidate {
 		out[i] = Candidate{
 			Model: j.Model.Form, Body: j.Model.Body, Rear: j.Model.rear(), GradientFraction: j.Acoustics.Beta, PortSpacing: j.Acoustics.Spacing,
 			ChiSquare: j.ChiSquare, ReducedChiSquare: j.ReducedChiSquare(), Delta: math.Min(a.delta(j), 1e6),
-			Chosen: i == 0, Why: a.why(i),
+			AtBound: j.BetaAtBound || j.SpacingAtBound, Chosen: i == 0, Why: a.why(i),
 		}
 	}
 	return out
@@ -255,7 +255,7 @@ func (a *Analysis) why(i int) string {
 	j := a.Candidates[i]
 	switch {
 	case !j.Status.Good():
-		return "did not end well: " + j.Status.String()
+		return "did not converge: " + j.Status.String()
 	case i > 0 && j.BetaAtBound:
 		return "its mix ran into the end of its range"
 	case len(a.Candidates) == 1:
@@ -269,7 +269,10 @@ func (a *Analysis) why(i int) string {
 	case a.delta(j) < within:
 		return "fits a little worse; its difference is part of the uncertainty"
 	}
-	return fmt.Sprintf("fits worse by %.0f in chi-square", math.Min(a.delta(j), 1e6))
+	if a.delta(j) > 1000 {
+		return "fits far worse"
+	}
+	return fmt.Sprintf("fits worse by %.0f in chi-square", a.delta(j))
 }
 
 // below is the dataset up to a frequency.

@@ -5,12 +5,15 @@ import (
 	"math/cmplx"
 )
 
-// What a response is thought to differ from the model before that is known, and
-// the least and the most that is believed afterwards, relative to its magnitude;
-// and the same for the room, 1/m.
+// LeastUnexplained is the least that is believed to be left over beside the noise,
+// relative to a response: about what gate and deconvolution are right to.
+const LeastUnexplained = 0.0003
+
+// What a response is thought to differ from the model before that is known, and the
+// most that is believed afterwards, relative to its magnitude; and the least and the
+// most for the room, 1/m.
 const (
 	firstUnexplained = 0.003
-	leastUnexplained = 0.0003
 	mostUnexplained  = 0.1
 	leastRoom        = 1e-4
 	mostRoom         = 3
@@ -64,10 +67,10 @@ func (j *Joint) levels() []float64 {
 // The room's part is only believed when it makes the residuals clearly likelier than
 // a relative part alone, by as much as one parameter more may (Akaike).
 func leftovers(r []residue) (unexplained, room float64) {
-	alone := least(func(u float64) float64 { return unlikely(r, u, 0) }, leastUnexplained, mostUnexplained)
+	alone := least(func(u float64) float64 { return unlikely(r, u, 0) }, LeastUnexplained, mostUnexplained)
 	best := unlikely(r, alone, 0)
 	inner := func(rho float64) float64 {
-		return least(func(u float64) float64 { return unlikely(r, u, rho) }, leastUnexplained, mostUnexplained)
+		return least(func(u float64) float64 { return unlikely(r, u, rho) }, LeastUnexplained, mostUnexplained)
 	}
 	rho := least(func(rho float64) float64 { return unlikely(r, inner(rho), rho) }, leastRoom, mostRoom)
 	if u := inner(rho); unlikely(r, u, rho) < best-2 {

@@ -126,7 +126,7 @@ func square(x float64) float64 { return x * x }
 // suspicious reports whether it is worth looking: something is left over, or a
 // tape is stretched.
 func (j *Joint) suspicious() bool {
-	if j.data.Unexplained > 2*leastUnexplained || j.data.Room > 0 {
+	if j.data.Unexplained > 2*LeastUnexplained || j.data.Room > 0 {
 		return true
 	}
 	for i, p := range j.data.Points {

@@ -121,7 +121,7 @@ func (a *Analysis) warnings(r *Result) []measure.Warning {
 		add("spacing-not-resolved", a.whyNoSpacing(c), a.spacingHint(c))
 	}
 	if c.Agrees != nil && !*c.Agrees {
-		add("claim-disagrees", fmt.Sprintf("the mix is that of a %s, the rig claims a %s", c.Pattern, c.Claimed),
+		add("claim-disagrees", fmt.Sprintf("the mix is that of %s, the rig claims %s", article(c.Pattern), article(c.Claimed)),
 			"is the pattern switch where it should be, and does the right side face the loudspeaker?")
 	}
 	if x := a.Data.Unexplained; x > misfitLimit {
@@ -143,6 +143,14 @@ func (a *Analysis) warnings(r *Result) []measure.Warning {
 		}
 	}
 	return out
+}
+
+// article puts one before a pattern.
+func article(pattern string) string {
+	if pattern == "omni" {
+		return "an omni"
+	}
+	return "a " + pattern
 }
 
 // octaveWords is a mix with its ± and where it was found.

@@ -121,6 +121,7 @@ type Candidate struct {
 	ChiSquare        float64 `json:"chi_square"`
 	ReducedChiSquare float64 `json:"reduced_chi_square"`
 	Delta            float64 `json:"delta_chi_square"` // above the best, scaled by the best's reduced chi-square
+	AtBound          bool    `json:"at_bound"`         // mix or spacing ended at the end of its range and means nothing
 	Chosen           bool    `json:"chosen"`
 	Why              string  `json:"why"`
 }

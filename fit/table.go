@@ -41,7 +41,13 @@ func (a *Analysis) predictedRise(r, f float64) (dB, u float64) {
 		return pointRise(best.Model, ac, r+best.Setback+dSetback, f)
 	}
 	const step = 1e-5
-	byBeta := (moved(step, 0, 0) - dB) / step
+	// At a mix of 0 the rise has no slope, but no less doubt: the mix is moved by as
+	// much as it is in doubt by.
+	by := math.Max(math.Hypot(best.BetaSE, a.Data.MethodMix), step)
+	byBeta := (moved(by, 0, 0) - dB) / by
+	if down := (dB - moved(-by, 0, 0)) / by; math.Abs(down) > math.Abs(byBeta) {
+		byBeta = down
+	}
 	bySpacing := (moved(0, step, 0) - dB) / step
 	bySetback := (moved(0, 0, step) - dB) / step
 	c := best.covariance

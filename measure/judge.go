@@ -32,7 +32,7 @@ func (a *Analyser) judge(t *TakeAnalysis, rec *Recording, full []float64) {
 		flag(Xrun, "the audio system lost data %d times: close other programs or use a larger buffer", n)
 	}
 	if t.Quality.SNR < silentSNR || t.Quality.Clarity < leastClarity {
-		flag(Silent, "nothing of the sweep arrived: look at cable, input, phantom power, pad and loudspeaker")
+		flag(Silent, "nothing of the sweep arrived: look at cable, input, gain, pad and loudspeaker, and at the power of a microphone that needs some")
 		return
 	}
 	if n := clipped(a.during(rec.Mic, t.Impulse.Arrival)); n >= clipSamples {

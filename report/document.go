@@ -72,6 +72,7 @@ func newDocument(d *Data, s Style) *document {
 	pdf.SetAuthor("standoff "+clean(d.Version), true)
 	pdf.SetSubject("Proximity effect of "+unitName(d), true)
 	pdf.SetCreator("standoff", true)
+	pdf.SetProducer("standoff", true)
 	pdf.SetAutoPageBreak(false, 0)
 	pdf.SetMargins(marginLeft, 0, marginRight)
 	pdf.SetCellMargin(0)

@@ -32,8 +32,7 @@ func riseAnswer(d *Data) string {
 	if len(parts) == 0 {
 		return "No rise could be drawn."
 	}
-	return "At 100 Hz the loudspeaker's sound comes back with " + strings.Join(parts, ", ") +
-		" over the far response. " + followsSentence(d)
+	return "At 100 Hz the rise over the far response is " + strings.Join(parts, ", ") + ", for this loudspeaker. " + followsSentence(d)
 }
 
 // followsSentence says whether residuals lie in their bands.

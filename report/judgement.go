@@ -16,7 +16,7 @@ func patternPage(d *Data, s Style) page {
 	beta, expanded, known := mixOf(d)
 	answer := "The mix is not resolved, so no pattern can be said."
 	if known {
-		answer = fmt.Sprintf("The mix of %s makes it %s, on its axis and far from sources and walls. "+
+		answer = fmt.Sprintf("The mix of %s is that of %s, at low frequencies and far from sources and walls. "+
 			"It is what the mix implies, not what a turntable would find.", covered(d.Result.Capsule.GradientFraction, 1, ""), article(d.Result.Capsule.Pattern))
 	}
 	return page{"What pattern is it?", answer, func(doc *document) {
@@ -59,8 +59,8 @@ func patternRows(beta, expanded float64) [][]string {
 		null = "none, or near 180°"
 	}
 	return [][]string{
-		{"level at 90°", level(math.Pi / 2), "cardioid −6 dB, figure-8 none"},
-		{"level at 180°", level(math.Pi), "cardioid none, hypercardioid −6 dB"},
+		{"level at 90°", level(math.Pi / 2), "cardioid −6 dB, figure-8 a null"},
+		{"level at 180°", level(math.Pi), "cardioid a null, hypercardioid −6 dB"},
 		{"null angle", null, "supercardioid 125°, hypercardioid 109°, figure-8 90°"},
 		{"directivity index", of(fit.DirectivityIndex, "dB"), "cardioid 4.8 dB, hypercardioid 6.0 dB"},
 		{"distance factor", of(fit.DistanceFactor, ""), "cardioid 1.7, hypercardioid 2.0"},
@@ -84,10 +84,14 @@ func trustPage(d *Data, s Style) page {
 			if m.Chosen {
 				name += " (chosen)"
 			}
-			rows = append(rows, []string{name, number.Fixed(m.GradientFraction, 4), number.Fixed(1000*m.PortSpacing, 2), misfit(m.ReducedChiSquare), m.Why})
+			mix, spacing := number.Fixed(m.GradientFraction, 4), number.Fixed(1000*m.PortSpacing, 2)
+			if m.AtBound {
+				mix, spacing = "–", "–"
+			}
+			rows = append(rows, []string{name, mix, spacing, misfit(m.ReducedChiSquare), m.Why})
 		}
 		doc.table([]column{{"model, body, rear", 2.5, left}, {"mix", 0.8, decimal}, {"spacing, mm", 1, decimal}, {"misfit", 0.9, decimal}, {"", 2.9, left}}, rows)
-		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained.", 7.5, s.Figure.Soft)
+		doc.paragraph("Misfit: reduced chi-square; about 1 when a model leaves no more than noise and what is called unexplained, well below 1 when the ± are cautious. Mix and spacing of a model that ended at the end of its range are not shown; the ± are those of the chosen one.", 7.5, s.Figure.Soft)
 	}}
 }
 
@@ -99,7 +103,7 @@ func trustAnswer(d *Data) string {
 		out = append(out, text)
 	}
 	return strings.Join(append(out, fmt.Sprintf("%s at %s: reduced chi-square %s, with %s left unexplained beside the noise.",
-		plural(f.Points, "point", "points"), plural(used(d.Result), "distance", "distances"), misfit(f.ReducedChiSquare), number.Percent(f.Unexplained))), " ")
+		plural(f.Points, "point", "points"), plural(used(d.Result), "distance", "distances"), misfit(f.ReducedChiSquare), leftOver(f))), " ")
 }
 
 // misfit writes a reduced chi-square.
@@ -117,14 +121,30 @@ func fitRows(r *fit.Result) [][]string {
 	c, f := r.Capsule, r.Fit
 	return [][]string{
 		{"setback of the capsule", value(c.Setback, 1000, "mm") + ", by the rig and the fit together"},
-		{"radius of the source", value(c.SourceRadius, 1000, "mm") + ", likewise"},
+		{"radius of the source", value(c.SourceRadius, 1000, "mm") + ", by the rig and the fit together"},
 		{"speed of sound", number.PlusMinus(f.SpeedOfSound, f.SpeedExpanded, "m/s")},
 		{"model", build(c)},
 		{"band and gate", fmt.Sprintf("%s to %s; gate %s: %s", number.Frequency(f.From), number.Frequency(f.To), number.Time(f.Gate), orDash(f.GateReason))},
-		{"clock of play and record", f.Clock},
-		{"unexplained, besides noise", number.Percent(f.Unexplained) + " of each response; " + number.Fixed(f.Alike, 1) + " neighbouring frequencies count as one"},
+		{"clock of player and recorder", f.Clock},
+		{"unexplained, besides noise", leftOver(f) + " of each response" + alikeText(f.Alike)},
 		{"the solver", f.Status},
 	}
+}
+
+// leftOver is what is left unexplained; below what can be told of it there is only a
+// limit.
+func leftOver(f fit.FitSummary) string {
+	if f.Unexplained <= fit.LeastUnexplained*1.01 {
+		return "at most " + number.Percent(fit.LeastUnexplained)
+	}
+	return number.Percent(f.Unexplained)
+}
+
+func alikeText(alike float64) string {
+	if alike < 1.05 {
+		return ""
+	}
+	return "; every " + number.Fixed(alike, 1) + " neighbouring frequencies count as one"
 }
 
 func aloneFigure(d *Data, s Style) figure.Alone {

@@ -72,17 +72,17 @@ func reach(t fit.RiseTable, hz float64) []string {
 	rise, last := t.DB[row], len(t.Distances)-1
 	at := number.Frequency(hz)
 	if !(math.Abs(rise[last]) <= 1) {
-		return []string{"At " + number.Length(t.Distances[last]) + " it is still more than 1 dB away from that."}
+		return []string{"At " + number.Length(t.Distances[last]) + " the rise at " + at + " is still above 1 dB."}
 	}
 	for j := last; j > 0; j-- {
 		here, nearer := math.Abs(rise[j]), math.Abs(rise[j-1])
 		if nearer > 1 {
 			part := (1 - here) / (nearer - here)
 			r := t.Distances[j] * math.Pow(t.Distances[j-1]/t.Distances[j], part)
-			return []string{"From about " + number.Fixed(100*r, 0) + " cm on, " + at + " is within 1 dB of that."}
+			return []string{"From about " + number.Fixed(100*r, 0) + " cm on, the rise at " + at + " is below 1 dB."}
 		}
 	}
-	return []string{"At every distance of the table " + at + " is within 1 dB of that."}
+	return []string{"At every distance of the table the rise at " + at + " is below 1 dB."}
 }
 
 func mixOf(d *Data) (beta, expanded float64, known bool) {
@@ -191,7 +191,11 @@ func (d *document) big(x, width float64, v fit.Value, scale float64, unit, word 
 // riseTable is the rise at working distances, with the widest ± of each column.
 func (d *document) riseTable() {
 	t := d.data.Result.RiseTable
-	d.heading("Rise in dB with the grille this far from a small source (a mouth, a string)")
+	heading, from := "Rise in dB with the grille this far from a small source (a mouth, a string)", d.data.Result.Fit.From
+	if len(t.Frequencies) > 0 && t.Frequencies[0] < from {
+		heading += "; * extrapolated"
+	}
+	d.heading(heading)
 	columns := []column{{"", 1.1, left}}
 	for _, r := range t.Distances {
 		columns = append(columns, column{number.Fixed(100*r, map[bool]int{true: 0, false: 1}[r*100 == float64(int(r*100+0.5))]) + " cm", 1.5, right})
@@ -199,6 +203,9 @@ func (d *document) riseTable() {
 	var rows [][]string
 	for i, f := range t.Frequencies {
 		row := []string{number.Frequency(f)}
+		if f < from {
+			row[0] += " *"
+		}
 		for j := range t.Distances {
 			if i < len(t.DB) && j < len(t.DB[i]) && i < len(t.Expanded) && j < len(t.Expanded[i]) {
 				row = append(row, strings.TrimSuffix(decibelsPlusMinus(t.DB[i][j], t.Expanded[i][j]), " dB"))
@@ -226,7 +233,7 @@ func conditions(d *Data) string {
 	}
 	polarity := "Polarity " + r.Polarity + "."
 	if r.Polarity == fit.PolarityUnknown {
-		polarity = "Polarity unknown: say source.polarity in the rig to have it told."
+		polarity = "Polarity unknown: set source.polarity in the rig to have it told."
 	}
 	return fmt.Sprintf("%s%s, %s of %s accepted, tape ± %s mm. Source: %s. Air: %s °C, %s %% humidity, %s kPa. "+
 		"Sweep: %s to %s in %s, %s dBFS, at %d Hz, by %s. Gate %s; fitted from %s to %s. %s",
@@ -239,7 +246,7 @@ func conditions(d *Data) string {
 
 // caution fits the unit's powering.
 func caution(powering string) string {
-	out := "Sweeps are louder than they look: protect hearing, begin low, and stay within what the loudspeaker's maker allows."
+	out := "Sweeps are louder than they look: protect hearing, start with the level down, and stay within what the loudspeaker's maker allows, at its low end above all."
 	switch powering {
 	case "phantom":
 		out += " Phantom power may harm a passive ribbon: connect and disconnect with the supply off and the channel down."

@@ -45,10 +45,10 @@ func TestReach(t *testing.T) {
 		table fit.RiseTable
 		want  string
 	}{
-		{riseOf(0.5, 0.1, 0.3, 0.5, 0.58, 0.7), "From about 54 cm on, 100 Hz is within 1 dB of that."},
-		{riseOf(1, 0.1, 0.3, 0.6), "At 600 mm it is still more than 1 dB away from that."},
-		{riseOf(0, 0.1, 0.3, 0.6), "At every distance of the table 100 Hz is within 1 dB of that."},
-		{riseOf(math.NaN(), 0.1, 0.6), "At 600 mm it is still more than 1 dB away from that."},
+		{riseOf(0.5, 0.1, 0.3, 0.5, 0.58, 0.7), "From about 54 cm on, the rise at 100 Hz is below 1 dB."},
+		{riseOf(1, 0.1, 0.3, 0.6), "At 600 mm the rise at 100 Hz is still above 1 dB."},
+		{riseOf(0, 0.1, 0.3, 0.6), "At every distance of the table the rise at 100 Hz is below 1 dB."},
+		{riseOf(math.NaN(), 0.1, 0.6), "At 600 mm the rise at 100 Hz is still above 1 dB."},
 		{fit.RiseTable{Frequencies: []float64{100}}, ""},
 		{fit.RiseTable{}, ""},
 	} {

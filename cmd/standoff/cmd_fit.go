@@ -70,7 +70,7 @@ func (e *env) one(dir string, write func(*analysed, string) error) (*analysed, e
 	}
 	defer f.Close()
 	e.notices(f)
-	e.say("%s: analysing %d takes", dir, len(f.Takes()))
+	e.say("%s: analysing %s", dir, takesText(len(f.Takes())))
 	a, err := analyse(e.ctx, f, version)
 	if err != nil {
 		return nil, err
@@ -79,6 +79,13 @@ func (e *env) one(dir string, write func(*analysed, string) error) (*analysed, e
 		return nil, fmt.Errorf("%s: %w", dir, err)
 	}
 	return a, nil
+}
+
+func takesText(n int) string {
+	if n == 1 {
+		return "1 take"
+	}
+	return fmt.Sprintf("%d takes", n)
 }
 
 func (e *env) notices(f *session.Folder) {

@@ -61,7 +61,7 @@ func (c *importCmd) Run(e *env) error {
 	if err := e.adopt(f, r, files); err != nil {
 		return err
 	}
-	e.say("analysing %d takes", len(f.Takes()))
+	e.say("analysing %s", takesText(len(f.Takes())))
 	a, err := analyse(e.ctx, f, version)
 	if err != nil {
 		return err

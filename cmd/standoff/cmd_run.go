@@ -27,6 +27,8 @@ func (runCmd) Help() string {
 
 At each prompt: Enter measures, s skips this distance, q stops here.
 
+Start with the level down, and keep ears away from the loudspeaker.
+
 Example:
 
   standoff run rig.yaml --tag RB-07 --serial 0193 --into sessions/RB-07` + exits(exitsLook)
@@ -126,11 +128,13 @@ func (e *env) caution(r *rig.Rig) {
 	if r.Audio.Backend == "virtual" {
 		return
 	}
-	e.say("caution: sweeps are louder than they look: start low, keep ears away from the loudspeaker, and stay below what its maker allows")
+	e.say("caution: sweeps are louder than they look: start with the level down, keep ears away from the loudspeaker, and stay within what its maker allows, at its low end above all")
 	switch r.Unit.Powering {
 	case "phantom":
 		e.say("caution: phantom power may harm a passive ribbon; connect and disconnect with the supply off and the channel down")
+	case "none":
+		e.say("caution: switch phantom power off on this channel before a passive ribbon is connected")
 	case "external":
-		e.say("caution: external supplies, those of tube microphones above all, hold dangerous voltage: opening them is for qualified people under local rules")
+		e.say("caution: external supplies, those of tube microphones above all, hold dangerous voltage, also after they have been switched off: opening them is for qualified people under local rules")
 	}
 }

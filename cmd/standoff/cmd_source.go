@@ -39,7 +39,7 @@ func (c *sourceCmd) Run(e *env) error {
 	}
 	defer f.Close()
 	e.notices(f)
-	e.say("%s: analysing %d takes", c.Dir, len(f.Takes()))
+	e.say("%s: analysing %s", c.Dir, takesText(len(f.Takes())))
 	a, r, err := radiate(e.ctx, f, c.Polarity)
 	if err != nil {
 		return cure(fmt.Errorf("%s: %w", c.Dir, err), "make a session with an omni at the distances of your rig, then: standoff source FOLDER")

@@ -9,6 +9,7 @@ import (
 
 	"standoff/measure/rig"
 	"standoff/measure/wav"
+	"standoff/report/number"
 )
 
 type sweepCmd struct {
@@ -18,6 +19,8 @@ type sweepCmd struct {
 
 func (sweepCmd) Help() string {
 	return `Writes what the rig plays, its silences included, at its level: 32-bit float, one channel. Play it by anything, record the microphone meanwhile at each distance, and bring the recordings in with: standoff import.
+
+Start with the loudspeaker turned down, and keep ears away from it.
 
 Example:
 
@@ -37,8 +40,8 @@ func (c *sweepCmd) Run(e *env) error {
 	if err := createNew(c.Out, func(w io.Writer) error { return wav.Encode(w, file) }); err != nil {
 		return err
 	}
-	e.print("%s: %.2f s, %.0f Hz to %.0f Hz, %d Hz, peak %.1f dBFS", c.Out, float64(len(exc.Samples))/float64(exc.Rate),
-		exc.From, exc.To, exc.Rate, dB(r.Sweep.Level))
+	e.print("%s: %.2f s, %s to %s, sample rate %d Hz, peak %s dBFS", c.Out, float64(len(exc.Samples))/float64(exc.Rate),
+		number.Frequency(exc.From), number.Frequency(exc.To), exc.Rate, number.Fixed(dB(r.Sweep.Level), 1))
 	e.say("caution: start with the loudspeaker turned down; a sweep is louder than it looks and reaches where small drivers and ears are hurt")
 	return nil
 }

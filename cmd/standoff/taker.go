@@ -92,7 +92,7 @@ func (t *taker) accepted(label string) int {
 // one makes one good take, or gives up after some tries.
 func (t *taker) one(d measure.Distance, repeat int) error {
 	for try := 1; ; try++ {
-		ok, err := t.try(d, repeat)
+		ok, err := t.try(d, repeat, try)
 		if err != nil || ok {
 			return err
 		}
@@ -103,8 +103,11 @@ func (t *taker) one(d measure.Distance, repeat int) error {
 	}
 }
 
-func (t *taker) try(d measure.Distance, repeat int) (ok bool, err error) {
+func (t *taker) try(d measure.Distance, repeat, try int) (ok bool, err error) {
 	where := fmt.Sprintf("%s take %d of %d", d.Label, repeat, t.repeats)
+	if try > 1 {
+		where += fmt.Sprintf(", try %d of %d", try, tries)
+	}
 	peak := 0.0
 	rec, err := t.rec.Record(t.e.ctx, audio.Request{
 		Excitation: t.exc.Samples, SampleRate: t.exc.Rate, Distance: d, Number: t.f.NextNumber(d.Label),

@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"gonum.org/v1/plot"
+	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 )
@@ -137,8 +138,15 @@ func (l labels) Plot(c draw.Canvas, p *plot.Plot) {
 			c.StrokeLine2(stroke(n.colour, l.s.Hair), at.X+gap/5, at.Y, to.X-gap/5, to.Y)
 		}
 		style.Color = readable(n.colour)
+		blank(c, style, to, short(n.text))
 		c.FillText(style, to, short(n.text))
 	}
+}
+
+// blank takes the grid away from behind a text.
+func blank(c draw.Canvas, style text.Style, at vg.Point, s string) {
+	r := style.Rectangle(s).Add(at)
+	c.FillPolygon(color.White, []vg.Point{r.Min, {X: r.Max.X, Y: r.Min.Y}, r.Max, {X: r.Min.X, Y: r.Max.Y}})
 }
 
 // longestName is what the room beside lines holds, in letters.
@@ -215,7 +223,9 @@ type note struct {
 func (n note) Plot(c draw.Canvas, _ *plot.Plot) {
 	style := n.s.text(n.s.Small, false, n.s.Soft, float64(draw.XRight), float64(draw.YTop))
 	for i, line := range n.lines {
-		c.FillText(style, vg.Point{X: c.Max.X - vg.Points(2), Y: c.Max.Y - vg.Points(2) - vg.Length(i)*n.s.Small*1.25}, line)
+		at := vg.Point{X: c.Max.X - vg.Points(2), Y: c.Max.Y - vg.Points(2) - vg.Length(i)*n.s.Small*1.25}
+		blank(c, style, at, line)
+		c.FillText(style, at, line)
 	}
 }
 

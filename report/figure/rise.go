@@ -91,7 +91,7 @@ func (r Rise) upper() *plot.Plot {
 	p.Y.Label.Text = "rise, dB"
 	var names []label
 	span := newSpan()
-	span.add(-2, 3)
+	span.add(-1, 3)
 	for i, c := range r.Curves {
 		colour := s.Ramp(i, len(r.Curves))
 		x, y := after(c.LineHz, c.LineDB, from)
@@ -152,7 +152,7 @@ func (r Rise) lower() *plot.Plot {
 		span.add(c.Residual...)
 	}
 	typical := medianOf(half)
-	reach := 1.3 * math.Max(math.Max(math.Abs(span.lo), math.Abs(span.hi)), math.Max(typical, 0.05))
+	reach := 1.3 * math.Max(math.Max(math.Abs(span.lo), math.Abs(span.hi)), math.Max(typical, 0.004))
 	if span.empty() {
 		reach = 1
 	}
