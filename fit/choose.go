@@ -245,6 +245,7 @@ func (a *Analysis) candidates() []Candidate {
 		out[i] = Candidate{
 			Model: j.Model.Form, Body: j.Model.Body, Rear: j.Model.rear(), GradientFraction: j.Acoustics.Beta, PortSpacing: j.Acoustics.Spacing,
 			ChiSquare: j.ChiSquare, ReducedChiSquare: j.ReducedChiSquare(), Delta: math.Min(a.delta(j), 1e6),
+			DegreesOfFreedom: j.Freedom, Criterion: j.ChiSquare/unit(a.Best()) + 2*float64(len(j.x)),
 			AtBound: j.BetaAtBound || j.SpacingAtBound, Chosen: i == 0, Why: a.why(i),
 		}
 	}

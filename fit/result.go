@@ -121,7 +121,9 @@ type Candidate struct {
 	ChiSquare        float64 `json:"chi_square"`
 	ReducedChiSquare float64 `json:"reduced_chi_square"`
 	Delta            float64 `json:"delta_chi_square"` // above the best, scaled by the best's reduced chi-square
-	AtBound          bool    `json:"at_bound"`         // mix or spacing ended at the end of its range and means nothing
+	DegreesOfFreedom int     `json:"degrees_of_freedom"`
+	Criterion        float64 `json:"information_criterion"` // Akaike's: chi-square in units of the best one's reduced chi-square, where that is above 1, and twice the parameters
+	AtBound          bool    `json:"at_bound"`              // mix or spacing ended at the end of its range and means nothing
 	Chosen           bool    `json:"chosen"`
 	Why              string  `json:"why"`
 }
