@@ -15,6 +15,7 @@ import (
 // the formulas anew). Both stop at their own tolerance, and the script takes the
 // noise a little differently, so they agree to a small part of their ±.
 func TestChainAgainstScipy(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	if testing.Short() {
 		t.Skip("takes some seconds")
 	}

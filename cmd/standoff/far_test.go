@@ -12,6 +12,7 @@ import (
 // From 200 mm on the spacing leaves next to no trace: the mix comes with an honest ±,
 // the spacing is not resolved, has a limit, and the cure is named.
 func TestFarDistancesOnly(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	for _, w := range []world{worlds[0], worlds[3]} {
 		r := w.meet(t, 4)
 		r.Distances = nil

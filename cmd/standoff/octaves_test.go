@@ -12,6 +12,7 @@ import (
 // A capsule that is a cardioid at 1 kHz and an omni at 100 Hz shows it, by octave and
 // in a warning; one that is a cardioid everywhere does not.
 func TestMixByOctave(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	for _, from := range []float64{0, 350} {
 		r := worlds[0].meet(t, 6)
 		c := &r.Virtual.Capsule

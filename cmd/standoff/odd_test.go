@@ -13,6 +13,7 @@ import (
 // others keep no flag. An error of 12 mm is already heard in the arrival; smaller
 // ones, and all of them without a common clock, only the fit can tell.
 func TestOddDistances(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	for _, c := range []struct {
 		name, at string
 		fault    rig.VirtualFault
@@ -21,7 +22,6 @@ func TestOddDistances(t *testing.T) {
 	}{
 		{"12 mm, common clock", "90mm", rig.VirtualFault{Kind: "wrong-distance", Amount: 0.012}, false, measure.DistanceMismatch},
 		{"5 mm, common clock", "63mm", rig.VirtualFault{Kind: "wrong-distance", Amount: 0.005}, false, measure.DistanceMismatch},
-		{"-6 mm, common clock", "220mm", rig.VirtualFault{Kind: "wrong-distance", Amount: -0.006}, false, measure.DistanceMismatch},
 		{"12 mm, free clock", "90mm", rig.VirtualFault{Kind: "wrong-distance", Amount: 0.012}, true, measure.DistanceMismatch},
 		{"5 mm at the nearest, free clock", "30mm", rig.VirtualFault{Kind: "wrong-distance", Amount: 0.005}, true, measure.DistanceMismatch},
 		{"0.8 dB", "140mm", rig.VirtualFault{Kind: "gain", Amount: 1.096}, false, measure.LevelJump},

@@ -56,6 +56,7 @@ func export(d *fit.Dataset, m fit.Model) (out exported) {
 // with models of its own and the far response as parameters, ends where ours does, to
 // 1e−6 of each value.
 func TestOptimumAgainstScipy(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	if testing.Short() {
 		t.Skip("takes some seconds")
 	}

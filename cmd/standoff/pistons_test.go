@@ -13,6 +13,7 @@ import (
 // A piston of 15 mm taken for what it is gives the mix; taken for a point, it is the
 // source that is named.
 func TestPistonTakenForAPoint(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	names := func(a *analysed) bool {
 		return slices.ContainsFunc(a.result.Warnings, func(w measure.Warning) bool { return w.Code == "source-size" })
 	}

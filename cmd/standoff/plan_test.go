@@ -20,16 +20,17 @@ func (w world) noisy(t *testing.T, seed uint64) *rig.Rig {
 	return r
 }
 
-// What the plan foresees is what many benches then scatter by: six seeds and
-// two capsules in every run, by which a standard deviation is known to 1/√10 = 32 %;
+// What the plan foresees is what many benches then scatter by: six seeds of
+// one capsule in every run, by which a standard deviation is known to 1/√10 = 32 %;
 // with PLAN=40, as the table of fit/STUDY.md has it, to 11 %. The factor 1.5 is asked for there, and three
 // times its own uncertainty more in a short run. The method's floor does not scatter
 // and is left out.
 func TestPlanForeseesTheScatter(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	if testing.Short() {
 		t.Skip("takes half a minute")
 	}
-	n, kinds := 6, []world{worlds[0], worlds[3]}
+	n, kinds := 6, []world{worlds[0]}
 	if s := os.Getenv("PLAN"); s != "" {
 		fmt.Sscan(s, &n)
 		kinds = []world{worlds[0], worlds[1], worlds[3]}

@@ -56,6 +56,7 @@ func anyRoom(t *testing.T, seed uint64) roomBench {
 // the rig says. Three benches in every run; with ROOMS set to a number that many, and
 // the table of fit/STUDY.md.
 func TestRooms(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	if testing.Short() {
 		t.Skip("takes a quarter of a minute")
 	}

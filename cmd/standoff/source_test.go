@@ -23,6 +23,7 @@ func pressureBench(t *testing.T, seed uint64, radius float64) *rig.Rig {
 // that go by it hold their intervals. One seed of each in every run; SOURCE=8 makes the
 // table of fit/STUDY.md.
 func TestSourceIsMeasured(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	n := 1
 	if s := os.Getenv("SOURCE"); s != "" {
 		fmt.Sscan(s, &n)
@@ -95,6 +96,7 @@ func writtenSource(t *testing.T, dir, block string) rig.Source {
 // From far away a source is a point: its radius is not resolved. And what has a
 // gradient part cannot measure a source.
 func TestSourceThatCannotBeMeasured(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	r := pressureBench(t, 3, 0.017)
 	for i := range r.Distances {
 		r.Distances[i].Metres += 0.35

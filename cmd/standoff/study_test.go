@@ -134,6 +134,7 @@ func (s *score) add(t *testing.T, w world, r *fit.Result) {
 // Benches whose truth is known, by the whole chain. Two of each kind in every run;
 // with STUDY set to a number that many, and the table of fit/STUDY.md.
 func TestWorlds(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
 	if testing.Short() {
 		t.Skip("takes half a minute")
 	}

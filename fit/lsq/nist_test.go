@@ -130,6 +130,19 @@ var nistSets = []nistSet{
 		rss:    8.7864049080e+03, rsd: 2.8262414662e+01,
 	},
 	{
+		name:  "bennett5",
+		model: func(b []float64, x float64) float64 { return b[0] * math.Pow(b[1]+x, -1/b[2]) },
+		grad: func(dst, b []float64, x float64) {
+			p := math.Pow(b[1]+x, -1/b[2])
+			dst[0], dst[1] = p, -b[0]*p/(b[2]*(b[1]+x))
+			dst[2] = b[0] * p * math.Log(b[1]+x) / (b[2] * b[2])
+		},
+		starts: [2][]float64{{-2000, 50, .8}, {-1500, 45, .85}},
+		value:  []float64{-2.5235058043e+03, 4.6736564644e+01, 9.3218483193e-01},
+		sd:     []float64{2.9715175411e+02, 1.2448871856e+00, 2.0272299378e-02},
+		rss:    5.2404744073e-04, rsd: 1.8629312528e-03,
+	},
+	{
 		name: "thurber",
 		model: func(b []float64, x float64) float64 {
 			return (b[0] + x*(b[1]+x*(b[2]+x*b[3]))) / (1 + x*(b[4]+x*(b[5]+x*b[6])))
