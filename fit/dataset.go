@@ -31,8 +31,8 @@ type Dataset struct {
 	MethodMix, MethodSpacing float64
 
 	level []float64 // |S·Far| on Hz, for Room; nil is none
-	// pressure holds the mix at 0 and the spacing at its least: of a microphone without a
-	// gradient part.
+	// pressure holds the mix at 0: of a microphone without a gradient part, whose spacing
+	// is no more than the size of a solid body, and nothing without one.
 	pressure bool
 
 	louder  int     // 1 + the point whose gain is free; 0 is none

@@ -162,7 +162,7 @@ func octaveWords(o OctaveMix) string {
 func (a *Analysis) whyNoSpacing(c CapsuleResult) string {
 	text := "the data do not hold the port spacing"
 	if v := c.GradientFraction; v.Resolved && *v.Value-*v.Expanded < leastGradient {
-		text += ": there is next to no gradient part that it could belong to"
+		text += ": there may be next to no gradient part that it could belong to"
 	}
 	if u := c.PortSpacing.UpperLimit; u != nil {
 		text += fmt.Sprintf("; it is below %.0f mm (95 %%, one-sided)", math.Ceil(*u*1e3))
@@ -172,6 +172,9 @@ func (a *Analysis) whyNoSpacing(c CapsuleResult) string {
 
 func (a *Analysis) spacingHint(c CapsuleResult) string {
 	if v := c.GradientFraction; v.Resolved && *v.Value-*v.Expanded < leastGradient {
+		if *v.Value+*v.Expanded > 3*leastGradient {
+			return "the mix itself is too uncertain: measure more distances, and see whether takes and distances agree"
+		}
 		return "nothing to do: a pressure microphone has no port spacing"
 	}
 	hint := ""

@@ -3,8 +3,6 @@ package fit
 import (
 	"fmt"
 	"math"
-
-	"standoff/fit/lsq"
 )
 
 // Radiator is what a pressure microphone says of the source.
@@ -64,6 +62,9 @@ const (
 // dataset's Setback and its uncertainty are those of the microphone; its Radius is not
 // used. A microphone whose mix is not that of a pressure microphone is an error.
 //
+// A solid body of the microphone is fitted along where the data speak for one; its
+// pressure is then taken to be the mean of both poles.
+//
 // The centre's uncertainty contains the microphone's setback, since only their sum is
 // seen; Radius hardly depends on it.
 func FitRadiator(d *Dataset, claimedPolarity string) (*Radiator, error) {
@@ -112,23 +113,43 @@ func pressureMix(d *Dataset) (Value, error) {
 	return mixValue(j.Acoustics.Beta, standard(u)), nil
 }
 
-// fitRadiator fits from several radii and keeps the best.
+// fitRadiator fits a microphone in free air and one on a solid body, whose size it
+// finds, and keeps what fits better: the body of even a small microphone disturbs the
+// field of a near source by as much as the radius of the source does.
 func fitRadiator(d *Dataset) (*Joint, error) {
-	m := Model{Form: Summed, Body: Open, Source: PistonSource}
+	air, errAir := fitRadiatorOn(d, Open, []float64{smallestSpacing})
+	solid, errSolid := fitRadiatorOn(d, Sphere, []float64{0.003, 0.009, 0.018, 0.03})
+	switch {
+	case errAir != nil && errSolid != nil:
+		return nil, errAir
+	case errAir != nil:
+		return solid, nil
+	case errSolid != nil || !solid.Status.Good():
+		return air, nil
+	}
+	// One parameter more has to be worth it (Akaike), by what each leaves over.
+	if air.unlikely()-solid.unlikely() > 2 {
+		return solid, nil
+	}
+	return air, nil
+}
+
+// fitRadiatorOn fits from several radii, and sizes of the body, and keeps the best.
+func fitRadiatorOn(d *Dataset, body string, sizes []float64) (*Joint, error) {
+	m := Model{Form: Summed, Body: body, Source: PistonSource}
 	p := newSeparable(d, m)
 	var starts [][]float64
-	for _, b := range []float64{0.004, 0.01, 0.018, 0.03, 0.05} {
-		x := p.start(0, smallestSpacing)
-		x[p.at.radius] = b
-		p.settleDelays(x)
-		starts = append(starts, x)
+	for _, size := range sizes {
+		for _, b := range []float64{0.004, 0.01, 0.018, 0.03, 0.05} {
+			x := p.start(0, size)
+			x[p.at.radius] = b
+			p.settleDelays(x)
+			starts = append(starts, x)
+		}
 	}
 	best, err := solveFrom(p, starts)
 	if err != nil {
 		return nil, err
-	}
-	if best.Status == lsq.NotRun {
-		return nil, fmt.Errorf("the source could not be fitted: %v", best.Status)
 	}
 	return summarise(d, m, best)
 }

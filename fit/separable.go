@@ -215,7 +215,9 @@ func (p *separable) bounds() (lower, upper []float64) {
 	upper[p.at.spacing] = math.Max(math.Min(0.95*reach, largestSpacing), 2*smallestSpacing)
 	if d.pressure {
 		lower[p.at.beta], upper[p.at.beta] = 0, 0
-		upper[p.at.spacing] = lower[p.at.spacing]
+		if p.model.Body == Open {
+			upper[p.at.spacing] = lower[p.at.spacing]
+		}
 	}
 	lower[p.at.radius], upper[p.at.radius] = 0, d.Radius+6*d.RadiusUncertainty
 	if p.model.Source == PointSource {

@@ -64,7 +64,7 @@ type Quality struct {
 	Arrival float64 // of the direct sound after the start of the sweep, less the latency that a loopback shows, s
 	Level   float64 // rms magnitude of the direct response from 1 to 6 kHz
 	Clarity float64 // of the direct sound: its envelope over the median around it; some 3 for anything but a sweep
-	Second  float64 // second harmonic's level relative to the fundamental; NaN when not known
+	Second  float64 // second harmonic's level relative to the fundamental; NaN when not known, or not clear of the noise
 }
 
 // Take analyses one recording that begins and ends about with the excitation and has
@@ -198,9 +198,22 @@ func (a *Analyser) second(full []float64, peak int) float64 {
 	}
 	lead := int(math.Round(a.exc.L * math.Ln2 * float64(a.exc.Rate)))
 	reach := a.exc.Rate / 200
-	main := energyAround(full, peak, reach)
-	return math.Sqrt(energyAround(full, peak-lead, reach) / math.Max(main, 1e-300))
+	main, second := energyAround(full, peak, reach), energyAround(full, peak-lead, reach)
+	// Between the harmonic and the sound there is nothing but noise and hum: what does
+	// not stand clear of them is no harmonic.
+	var beside []float64
+	for _, part := range []float64{0.3, 0.4, 0.5, 0.6, 0.7} {
+		beside = append(beside, energyAround(full, peak-int(part*float64(lead)), reach))
+	}
+	noise := Median(beside)
+	if second < clearOfNoise*noise {
+		return math.NaN()
+	}
+	return math.Sqrt((second - noise) / math.Max(main, 1e-300))
 }
+
+// clearOfNoise is the ratio of energies from which a harmonic is one.
+const clearOfNoise = 4.0
 
 func energyAround(x []float64, at, reach int) (sum float64) {
 	for i := at - reach; i <= at+reach; i++ {

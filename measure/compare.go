@@ -72,11 +72,12 @@ type Finding struct {
 }
 
 // Compare looks at each take in the company of the others: arrival and level
-// against distance. The result has one list for every take. With fewer than
-// three distances nothing is said.
+// against distance. The result has one list for every take. With fewer than three
+// distances only the takes of one distance are held against each other.
 func (b Bench) Compare(takes []Placed) [][]Finding {
 	out := make([][]Finding, len(takes))
 	if countPlaces(takes) < 3 {
+		b.compareRepeats(takes, out)
 		return out
 	}
 	clock := b.DecideClock(takes)
@@ -98,6 +99,27 @@ func (b Bench) Compare(takes []Placed) [][]Finding {
 		}
 	}
 	return out
+}
+
+// compareRepeats flags the takes of a distance that differ in level by more than any
+// repeat may. With nothing else to go by, all of them: one is wrong, and which is not
+// known.
+func (b Bench) compareRepeats(takes []Placed, out [][]Finding) {
+	places := map[string][]int{}
+	for i, t := range takes {
+		places[t.Distance.Label] = append(places[t.Distance.Label], i)
+	}
+	for _, at := range places {
+		least, most := math.Inf(1), 0.0
+		for _, i := range at {
+			least, most = math.Min(least, takes[i].Analysis.Quality.Level), math.Max(most, takes[i].Analysis.Quality.Level)
+		}
+		if most > levelSlack*least {
+			for _, i := range at {
+				out[i] = append(out[i], Finding{LevelJump, fmt.Sprintf("takes of this distance differ by %.1f dB: one of them is wrong", 20*math.Log10(most/least))})
+			}
+		}
+	}
 }
 
 // gradientRise is the most by which a near-field rise can lift the rms level from 1

@@ -150,3 +150,22 @@ func TestMedianAndMAD(t *testing.T) {
 		t.Error("Median sorts what it is given")
 	}
 }
+
+// With two distances only, repeats that cannot both be right are named.
+func TestCompareHoldsRepeatsAgainstEachOther(t *testing.T) {
+	takes := placed(0, steady)
+	pair := []Placed{takes[0], takes[0], takes[3]}
+	other := *takes[0].Analysis
+	other.Quality.Level /= 70
+	pair[1].Analysis = &other
+	got := bench(0).Compare(pair)
+	if len(got[0]) != 1 || len(got[1]) != 1 || len(got[2]) != 0 || got[0][0].Flag != LevelJump {
+		t.Errorf("two takes that differ by 37 dB: %v", got)
+	}
+	other.Quality.Level = takes[0].Analysis.Quality.Level * 1.05
+	for i, f := range bench(0).Compare(pair) {
+		if len(f) > 0 {
+			t.Errorf("take %d, 0.4 dB apart: %v", i, f)
+		}
+	}
+}

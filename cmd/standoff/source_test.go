@@ -73,6 +73,32 @@ func TestSourceIsMeasured(t *testing.T) {
 	}
 }
 
+// A microphone with a body of its own disturbs the field that it is to measure, and the
+// data tell both apart less well: the radius, or its limit, holds the truth all the same.
+func TestSourceByASolidMicrophone(t *testing.T) {
+	t.Parallel() // after all others, which may listen to an audio server
+	for _, c := range []struct{ radius, body float64 }{{0.010, 0.003}, {0.025, 0.006}} {
+		r := pressureBench(t, 7, c.radius)
+		r.Virtual.Capsule.Body, r.Virtual.Capsule.PortSpacing = "sphere", 3*c.body
+		_, got, err := radiate(t.Context(), recorded(t, r, filepath.Join(t.TempDir(), "solid")), "unknown")
+		if err != nil {
+			t.Fatal(err)
+		}
+		if !got.Radius.Resolved {
+			if u := got.Radius.UpperLimit; u != nil && *u < c.radius {
+				t.Errorf("body of %.0f mm: the radius of %.0f mm is said to be below %.1f mm", 1e3*c.body, 1e3*c.radius, 1e3**u)
+			}
+			t.Logf("body of %.0f mm, source of %.0f mm: not resolved", 1e3*c.body, 1e3*c.radius)
+			continue
+		}
+		off, half := *got.Radius.Value-c.radius, *got.Radius.Expanded
+		t.Logf("body of %.0f mm, source of %.0f mm: off by %.2f ± %.2f mm", 1e3*c.body, 1e3*c.radius, 1e3*off, 1e3*half)
+		if math.Abs(off) > half {
+			t.Errorf("body of %.0f mm: off by %.2f ± %.2f mm", 1e3*c.body, 1e3*off, 1e3*half)
+		}
+	}
+}
+
 func worst(x []float64) (w float64) {
 	for _, v := range x {
 		w = math.Max(w, math.Abs(v))
